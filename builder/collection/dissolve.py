@@ -1,0 +1,312 @@
+"""How much of a salt dissolves: the first question, answered through the engine with its budget."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from builder.chem.activity import coefficients, log10_gamma
+from builder.chem.curve import CurveValue, at
+from builder.chem.equilibrium import solve
+from builder.chem.formula import parse_formula
+from builder.chem.problem import BEYOND_LIMIT, COMPUTED, DAVIES, MODEL_NAMES, Problem, Solution
+from builder.chem.temperature import LN10
+from builder.chem.water import density_kg_m3
+from builder.collection.forms import HYDROGEN, Made, add
+from builder.collection.mixture import (
+    Mixture,
+    NotKnownError,
+    hold_law,
+    mixture,
+    problem,
+    textbook,
+)
+from builder.collection.reference import Reference
+
+
+@dataclass(frozen=True)
+class FormAmount:
+    """One dissolved form. share: of all dissolved metal of the salt; None for a form without it."""
+
+    form: str
+    share: float | None
+    mol_per_kg: float
+    activity_coefficient: float
+
+
+@dataclass(frozen=True)
+class BudgetLine:
+    """Part of the variance of log10 of the solubility that one constant carries."""
+
+    constant: str
+    sensitivity: float
+    u: float
+    share: float  # of the variance
+
+
+@dataclass(frozen=True)
+class OtherSolid:
+    """Another solid of the collection the answer is supersaturated with."""
+
+    salt: str
+    saturation_index: float
+
+
+@dataclass(frozen=True)
+class Dissolved:
+    """Answer of `dissolve`. Where state is refused every number is None and reason says why."""
+
+    salt: str
+    temperature_c: float
+    state: str
+    reason: str
+    constant: CurveValue
+    solubility_mol_per_kg: float | None = None
+    solubility_mol_per_l: float | None = None
+    solubility_g_per_l: float | None = None
+    solubility_g_per_l_anhydrous: float | None = None
+    metal: str = ""
+    metal_mg_per_kg: float | None = None
+    metal_mg_per_l: float | None = None
+    forms: tuple[FormAmount, ...] = ()
+    ionic_strength: float | None = None
+    activity_model: str = ""
+    ph: float | None = None
+    standard_uncertainty_log10: float | None = None
+    budget: tuple[BudgetLine, ...] = ()
+    textbook_mol_per_kg: float | None = None
+    other_solids: tuple[OtherSolid, ...] = ()
+
+
+Additions = Sequence[tuple[str, float]]  # (formula of an electrolyte, mol/kg)
+
+
+def dissolve(
+    reference: Reference, salt_id: str, t_celsius: float, additions: Additions = ()
+) -> Dissolved:
+    """Solubility of a salt in water with electrolytes added, free pH, no carbon dioxide.
+
+    Never raises for a known salt, known electrolytes and any temperature: what can not be
+    answered is refused in words.
+    """
+    evaluated = reference.salts[salt_id]
+    if evaluated.law.curve is None:
+        nothing = CurveValue(t_celsius, "refused", 0.0, None, None, 1.96, evaluated.refused)
+        return Dissolved(salt_id, t_celsius, "refused", evaluated.refused, nothing)
+    value = at(evaluated.law.curve, t_celsius)
+    if value.log10_k is None:
+        return Dissolved(salt_id, t_celsius, "refused", value.reason, value)
+    solid = reference.dissolving[salt_id]
+    given = [(reference.additions[formula], m) for formula, m in additions if m > 0.0]
+    try:
+        mix = mixture(
+            reference.forms, reference.collection, solid, [g for g, _ in given],
+            evaluated.salt.needs,
+        )  # fmt: skip
+    except NotKnownError as unknown:
+        return Dissolved(salt_id, t_celsius, "refused", str(unknown), value)
+    totals = add([(m, made) for made, m in given], {}).base
+    asked = salt_problem(reference, salt_id, mix, t_celsius, totals)
+    answer = solve(asked)
+    simple = textbook_amount(reference, salt_id, mix, t_celsius, totals)
+    if answer.state[0] != COMPUTED:
+        reason = (
+            f"the ionic strength would pass {mix.limit:g} mol/kg, where the activity model ends"
+            if answer.state[0] == BEYOND_LIMIT
+            else "the engine found no solution"
+        )
+        return Dissolved(salt_id, t_celsius, "refused", reason, value, textbook_mol_per_kg=simple)
+    return _answer(reference, salt_id, value, mix, asked, answer, simple)
+
+
+def salt_problem(
+    reference: Reference,
+    salt_id: str,
+    mix: Mixture,
+    t_celsius: float,
+    totals: Mapping[str, float],
+) -> Problem:
+    """The engine's problem of one salt at saturation."""
+    curve = reference.salts[salt_id].law.curve
+    assert curve is not None  # checked by the callers
+    solid = reference.dissolving[salt_id]
+    side_laws = {name: c.law for name, c in reference.side_curves.items()}
+    return problem(mix, t_celsius, totals, [(solid, hold_law(curve.law, solid, side_laws))])
+
+
+def textbook_amount(
+    reference: Reference,
+    salt_id: str,
+    mix: Mixture,
+    t_celsius: float,
+    totals: Mapping[str, float],
+) -> float | None:
+    """mol/kg from free ions and concentrations alone, for comparison; None without a solution."""
+    answer = solve(salt_problem(reference, salt_id, textbook(mix), t_celsius, totals))
+    return float(answer.amount[0, 0]) if answer.state[0] == COMPUTED else None
+
+
+def metal_of(reference: Reference, salt_id: str) -> str:
+    """The cation whose dissolved forms are shared out: the first one of the dissolution."""
+    solid = reference.dissolving[salt_id]
+    return next(ion for ion in solid.base if ion != HYDROGEN and ion.endswith("+"))
+
+
+def _answer(
+    reference: Reference,
+    salt_id: str,
+    value: CurveValue,
+    mix: Mixture,
+    asked: Problem,
+    answer: Solution,
+    simple: float | None,
+) -> Dissolved:
+    evaluated = reference.salts[salt_id]
+    t = value.t_celsius
+    s = float(answer.amount[0, 0])
+    litre = density_kg_m3(t) / 1000.0
+    formula = parse_formula(evaluated.salt.formula)
+    mass = reference.molar_mass(evaluated.salt.formula)
+    dry = mass - float(formula.water) * reference.molar_mass("H2O")
+    metal = metal_of(reference, salt_id)
+    times = [f.made.base.get(metal, 0.0) for f in mix.forms]
+    molality = [float(m) for m in answer.molality[0]]
+    total_metal = math.fsum(n * m for n, m in zip(times, molality, strict=True))
+    forms = tuple(
+        FormAmount(
+            f.formula,
+            n * m / total_metal if n else None,
+            m,
+            10.0 ** float(answer.log10_gamma[0, i]),
+        )
+        for i, (f, n, m) in enumerate(zip(mix.forms, times, molality, strict=True))
+    )
+    metal_mass = reference.molar_mass(metal)
+    u, budget = _budget(reference, salt_id, value, mix, asked, answer)
+    return Dissolved(
+        salt=salt_id,
+        temperature_c=t,
+        state="computed",
+        reason="",
+        constant=value,
+        solubility_mol_per_kg=s,
+        solubility_mol_per_l=s * litre,
+        solubility_g_per_l=s * litre * mass,
+        solubility_g_per_l_anhydrous=s * litre * dry,
+        metal=metal,
+        metal_mg_per_kg=total_metal * metal_mass * 1000.0,
+        metal_mg_per_l=total_metal * metal_mass * 1000.0 * litre,
+        forms=forms,
+        ionic_strength=float(answer.ionic_strength[0]),
+        activity_model=MODEL_NAMES[mix.model],
+        ph=-float(answer.ln_activity[0, 0]) / LN10,
+        standard_uncertainty_log10=u,
+        budget=budget,
+        textbook_mol_per_kg=simple,
+        other_solids=_other_solids(reference, salt_id, mix, answer, t),
+    )
+
+
+def _budget(
+    reference: Reference,
+    salt_id: str,
+    value: CurveValue,
+    mix: Mixture,
+    asked: Problem,
+    answer: Solution,
+) -> tuple[float | None, tuple[BudgetLine, ...]]:
+    """u(log10 s) from all constants through the Jacobian, plus the spread of the models.
+
+    The model line is the change of log10 s to first order when the coefficients of the other
+    activity model are put in at the same ionic strength, taken as one standard deviation.
+    """
+    by_hold = float(answer.by_hold[0, 0])
+    by_form = [float(x) for x in answer.by_form[0]]
+    powers: dict[str, float] = {}
+    for name, n in reference.dissolving[salt_id].constants.items():
+        powers[name] = powers.get(name, 0.0) - n * by_hold
+    for form, slope in zip(mix.forms, by_form, strict=True):
+        for name, n in form.made.constants.items():
+            powers[name] = powers.get(name, 0.0) + n * slope
+    if value.u is None:
+        return None, ()
+    lines = [("solubility product", by_hold, value.u)]
+    for name, slope in powers.items():
+        side = at(reference.side_curves[name], value.t_celsius)
+        lines.append((name, slope, side.u or 0.0))
+    lines.append(("activity model", 1.0, abs(_model_change(asked, answer, by_form))))
+    variance = math.fsum((slope * u) ** 2 for _, slope, u in lines)
+    budget = [
+        BudgetLine(name, slope, u, (slope * u) ** 2 / variance if variance else 0.0)
+        for name, slope, u in lines
+    ]
+    budget.sort(key=lambda line: (-line.share, line.constant))
+    return math.sqrt(variance), tuple(line for line in budget if line.share > 1e-4)
+
+
+def _model_change(asked: Problem, answer: Solution, by_form: Sequence[float]) -> float:
+    """First-order change of log10 s when the γ of Davies are put in; 0 where they are used."""
+    other = Problem(
+        **{
+            **{name: getattr(asked, name) for name in asked.__dataclass_fields__},
+            "model": np.full_like(asked.model, DAVIES),
+        }
+    )
+    gamma = log10_gamma(*coefficients(other), answer.ionic_strength)[0]
+    change = gamma - answer.log10_gamma[0]
+    # log10 m_i = ... - log10 γ_i: a larger γ acts like a smaller constant
+    return -math.fsum(s * float(d) for s, d in zip(by_form, change, strict=True))
+
+
+def _other_solids(
+    reference: Reference, salt_id: str, mix: Mixture, answer: Solution, t: float
+) -> tuple[OtherSolid, ...]:
+    """Other solids of the collection whose saturation index is above 0 in this solution."""
+    log_a = {b: float(answer.ln_activity[0, i]) / LN10 for i, b in enumerate(mix.bases)}
+    found: list[OtherSolid] = []
+    for other_id, evaluated in reference.salts.items():
+        made = reference.dissolving[other_id]
+        if other_id == salt_id or not set(made.base) <= set(log_a) or evaluated.law.curve is None:
+            continue
+        value = at(evaluated.law.curve, t)
+        if value.log10_k is None:
+            continue
+        index = _product(made, log_a, float(answer.ln_water[0]) / LN10, reference, t)
+        if index - value.log10_k > 0.0:
+            found.append(OtherSolid(other_id, index - value.log10_k))
+    return tuple(sorted(found, key=lambda o: -o.saturation_index))
+
+
+def _product(
+    made: Made, log_a: Mapping[str, float], log_water: float, reference: Reference, t: float
+) -> float:
+    """log10 of the ion activity product of a dissolution, in the terms of its own constant."""
+    constants = math.fsum(
+        n * (at(reference.side_curves[name], t).log10_k or 0.0)
+        for name, n in made.constants.items()
+    )
+    ions = math.fsum(n * log_a[ion] for ion, n in made.base.items())
+    return ions + made.water * log_water + constants
+
+
+def dissolve_textbook(reference: Reference, full: Dissolved, additions: Additions) -> Dissolved:
+    """The textbook's answer, in the same form, to stand beside the full answer to a question.
+
+    Free ions and concentrations for activities; its uncertainty is not evaluated. Refused where
+    the collection does not know which other forms there are, so that nothing is hidden.
+    """
+    if full.textbook_mol_per_kg is None:
+        reason = full.reason or "the engine found no solution"
+        return Dissolved(full.salt, full.temperature_c, "refused", reason, full.constant)
+    solid = reference.dissolving[full.salt]
+    given = [(m, reference.additions[formula]) for formula, m in additions if m > 0.0]
+    needs = reference.salts[full.salt].salt.needs
+    made = [part for _, part in given]
+    mix = textbook(mixture(reference.forms, reference.collection, solid, made, needs))
+    asked = salt_problem(reference, full.salt, mix, full.temperature_c, add(given, {}).base)
+    simple = full.textbook_mol_per_kg
+    answer = _answer(reference, full.salt, full.constant, mix, asked, solve(asked), simple)
+    return replace(answer, standard_uncertainty_log10=None, budget=(), other_solids=())
