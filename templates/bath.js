@@ -67,7 +67,7 @@
     putAligned(cells[7], change === null ? '' : S.words.shown(Math.pow(10, change), 2));
     var state = document.createElement('span');
     state.className = 'state ' + text.state;
-    state.textContent = text.state_words;
+    state.textContent = text.state_words.replace(' the range of the law', ' range');
     cells[8].replaceChildren(state);
     var interval = value.interval || [null, null];
     entry.keys = entry.keys.slice(0, 2).concat([

@@ -21,6 +21,7 @@ var Sparingly = Sparingly || {};
   var LN10 = Math.LN10;
   var MOLAR_MASS_WATER = 0.018015; // kg/mol
   var LARGEST_STEP = 4; // in ln a
+  var LOWEST_LN_A = -230;
   var INNER_STEPS = 200;
   var COUPLED_STEPS = 40;
   var SCAN_STEPS = 120;
@@ -58,6 +59,8 @@ var Sparingly = Sparingly || {};
     function lnK(law) { return LN10 * log10K(law, t); }
     // an ideal solution has an ideal solvent too: no water term
     function wet(nu) { return model === IDEAL ? 0 : nu; }
+    var hold = flat(problem.hold, bases);
+    var exchange = flat(problem.exchange, bases);
     return {
       forms: problem.charge.length,
       bases: bases,
@@ -77,10 +80,12 @@ var Sparingly = Sparingly || {};
         return model === IDEAL ? 0 : linear;
       }),
       total: problem.total,
-      hold: flat(problem.hold, bases),
+      hold: hold,
       holdWater: problem.hold_water.map(wet),
       holdLnK: problem.hold_law.map(lnK),
-      exchange: flat(problem.exchange, bases),
+      exchange: exchange,
+      // every hold exchanges what it holds: only then is the problem convex
+      symmetric: hold.every(function (r, at) { return r === exchange[at]; }),
       limit: model === IDEAL ? Infinity : problem.limit
     };
   }
@@ -96,7 +101,11 @@ var Sparingly = Sparingly || {};
   }
 
   function sumOf(a) {
-    return dot(a, 0, a.map(function () { return 1; }), 0, a.length);
+    var sum = 0;
+    for (var i = 0; i < a.length; i += 1) {
+      sum += a[i];
+    }
+    return sum;
   }
 
   // Solves matrix · y = right by elimination with partial pivoting. Overwrites both and returns
@@ -195,7 +204,7 @@ var Sparingly = Sparingly || {};
   // Largest balance error relative to the sum of absolute terms.
   function residual(n, m, s) {
     var b = balance(n, m, s);
-    return b.error.reduce(function (most, e, i) { return Math.max(most, Math.abs(e) / b.size[i]); }, 0);
+    return largestOf(b.error.map(function (e, i) { return e / b.size[i]; }));
   }
 
   // How far hold k is from being met, in ln K.
@@ -321,23 +330,30 @@ var Sparingly = Sparingly || {};
   }
 
   function largestOf(a) {
-    return a.reduce(function (most, v) { return Math.max(most, Math.abs(v)); }, 0);
+    var most = 0;
+    for (var i = 0; i < a.length; i += 1) {
+      most = Math.max(most, Math.abs(a[i])); // NaN stays NaN
+    }
+    return most;
   }
 
   function moved(x, step, damping) {
-    return x.map(function (v, b) { return v + damping * step[b]; });
+    var out = new Float64Array(x.length);
+    for (var b = 0; b < x.length; b += 1) {
+      out[b] = x[b] + damping * step[b];
+    }
+    return out;
   }
 
   // Halves the damping until the convex function Σ m - T·x falls; small steps need no check.
   // Off the plane of the holds it may have to rise: only descents are checked.
   function descend(n, state, m, step, damping, largest) {
-    var symmetric = n.hold.every(function (r, at) { return r === n.exchange[at]; });
     var before = sumOf(m) - dot(n.total, 0, state.x, 0, n.bases);
     var slope = -dot(n.total, 0, step, 0, n.bases);
     for (var i = 0; i < n.forms; i += 1) {
       slope += m[i] * dot(n.nu, i * n.bases, step, 0, n.bases);
     }
-    if (!(symmetric && largest > 1e-3 && slope < 0)) {
+    if (!(n.symmetric && largest > 1e-3 && slope < 0)) {
       return damping;
     }
     for (var tries = 0; tries < 30; tries += 1) {
@@ -352,13 +368,25 @@ var Sparingly = Sparingly || {};
     return damping;
   }
 
+  // Where a hold exchanges something else, the ion exchanged may ask for a negative amount until
+  // the others settle: it must not hold them up, nor go beyond return.
+  function limitEach(step, x) {
+    step.forEach(function (v, b) {
+      var limited = Math.min(Math.max(v, -LARGEST_STEP), LARGEST_STEP);
+      step[b] = Math.max(limited, Math.min(LOWEST_LN_A - x[b], 0));
+    });
+  }
+
   // Newton at the I and Σ m of the state; updates x, s and error in place.
   function inner(n, state) {
     var m = molality(n, state.x, state.ionic, state.solutes);
     for (var round = 0; round < INNER_STEPS; round += 1) {
       var step = innerStep(n, state, m);
-      var largest = largestOf(step.x);
       state.s = step.s;
+      if (!n.symmetric) {
+        limitEach(step.x, state.x);
+      }
+      var largest = largestOf(step.x);
       if (!Number.isFinite(largest)) {
         state.error = Infinity;
         return;

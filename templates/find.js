@@ -201,17 +201,28 @@
     var link = document.createElement('a');
     var formula = part('formula', '');
     var others = salt.mineral && salt.mineral !== salt.name ? salt.mineral : '';
-    var kept = [salt.log10K && 'log10 K ' + salt.log10K, salt.amount].filter(Boolean).join(', ');
     link.href = address(salt, t);
     writeFormula(formula, salt.formula);
     link.append(formula, part('name', salt.name + (t === undefined ? '' : ' at ' + t + ' °C')));
     if (others) {
       link.append(part('fine', others));
     }
-    link.append(part('k', kept && kept + ' at 25 °C'));
+    link.append(constants(salt));
     var line = document.createElement('li');
     line.append(link);
     return line;
+  }
+
+  // What the index keeps of a salt at 25 °C; empty where it keeps nothing.
+  function constants(salt) {
+    var kept = part('k', '');
+    if (salt.log10K) {
+      var ten = document.createElement('sub');
+      ten.textContent = '10';
+      kept.append('log', ten, ' K ' + salt.log10K + (salt.amount && ', '));
+    }
+    kept.append(salt.amount, salt.log10K || salt.amount ? ' at 25 °C' : '');
+    return kept;
   }
 
   function show() {

@@ -33,7 +33,7 @@ class Reported:
 
     log10_k None: not converted, `reason` says why. u_stated: from the printed uncertainty, None
     where not stated. u_digits: what the last printed digit alone leaves open.
-    comparable: same solid and reaction, zero ionic strength or none stated, at 25 °C.
+    comparable: surely this solid and reaction, zero ionic strength or none stated, at 25 °C.
     """
 
     determination: Determination
@@ -65,7 +65,9 @@ def read_figure(
         shift, step = other
         value += shift
         steps = (*steps, step)
-    comparable = abs(t - 25.0) <= 1.0 and figure.medium in ("zero", "not stated")
+    comparable = (
+        abs(t - 25.0) <= 1.0 and figure.medium in ("zero", "not stated") and figure.solid is None
+    )
     return Reported(determination, t, value, u, digits, comparable, steps)
 
 

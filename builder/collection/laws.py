@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+
+import numpy as np
 
 from builder.chem.curve import NO_COVARIANCE, Curve, thermodynamic_covariance
 from builder.chem.fit import Matrix3, student_95, weighted
@@ -18,6 +20,7 @@ from builder.chem.temperature import (
     basis,
     enthalpy_law,
     expression_law,
+    log10_k,
     recentred,
 )
 from builder.chem.water import kelvin, log10_kw
@@ -70,7 +73,7 @@ def law_curve(
     """Curve of one law. `u_of`: standard uncertainty of log10 K of each determination."""
     assert law.range_c is not None  # every law of a salt has one (schema)
     carries = 0.0 if law.interpolation_only else CARRIES_K[law.kind]
-    if law.kind == "expression":
+    if law.kind == "expression" and law.determination is None:
         return _expression(law, carries)
     if law.kind == "points":
         return _points(salt, law, reported, carries)
@@ -79,6 +82,8 @@ def law_curve(
         return LawCurve(
             law, None, (), "", f"its determination {law.determination} gives no constant"
         )
+    if law.kind == "expression":
+        return _moved_expression(law, carries, anchor, u_of[anchor.determination.id])
     if law.kind == "formation":
         entries = collection.formation[law.table or ""].entries
         enthalpy = reaction_change(salt.reaction, entries, "enthalpy_kj_mol")
@@ -146,6 +151,27 @@ def _expression(law: Law, carries: float) -> LawCurve:
         Step("standard uncertainty of log10 K", basis_words, fixed(u, 3)),
     )
     return LawCurve(law, curve, steps, "ΔCp follows from the expression")
+
+
+def _moved_expression(law: Law, carries: float, anchor: Reported, u0: float | None) -> LawCurve:
+    """The expression moved, as a whole, to pass through a determination that is better known."""
+    printed = _expression(law, carries)
+    assert printed.curve is not None and anchor.log10_k is not None
+    there = float(log10_k(np.asarray(printed.curve.law), np.asarray(kelvin(anchor.t_celsius))))
+    shift = ten_digits(anchor.log10_k - there)
+    first = printed.curve.law
+    curve = replace(
+        printed.curve,
+        law=(first[0], ten_digits(first[1] + shift), *first[2:]),
+        covariance=None if u0 is None else NO_COVARIANCE,
+        flat=ten_digits(_or(u0, 0.0)),
+    )
+    step = Step(
+        f"the expression moved to pass through {anchor.determination.id}",
+        f"{fixed(anchor.log10_k, 4)} - ({fixed(there, 4)}) at {anchor.t_celsius:g} °C",
+        fixed(shift, 4),
+    )
+    return replace(printed, curve=curve, steps=(printed.steps[0], step))
 
 
 _TERM_WORDS = {

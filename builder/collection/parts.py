@@ -105,6 +105,7 @@ class Parts:
             printed=printed,
             unit=value.get("unit"),
             solid_as=value.get("solid_as"),
+            solid=value.get("solid"),
             reaction=value.get("reaction"),
             temperature_c=None if isinstance(t, str) else float(t),
             medium=value["medium"],
@@ -249,6 +250,8 @@ class Parts:
             other_names=tuple(value["other_names"]),
             size_angstrom=float(best["angstrom"]),
             linear=float(best.get("b", 0.0)),
-            size_citation=Citation(best["source"], best["locator"], best["evidence"]),
+            size_citation=Citation(
+                best["source"], best["locator"], best["evidence"], best.get("via")
+            ),
             origin=origin,
         )

@@ -73,6 +73,7 @@ class Figure:
     printed: Printed
     unit: str | None
     solid_as: str | None  # formula a mass refers to, where not the salt's own
+    solid: str | None  # 'not stated' or 'other', where it is not surely this solid
     reaction: str | None  # where the source wrote another reaction
     temperature_c: float | None
     medium: str

@@ -21,7 +21,6 @@ CODES: Mapping[str, Level] = {
     "chem-balance": "error",
     "chem-solid": "error",
     "chem-unknown-form": "error",
-    "chem-ion-charge": "error",
     "chem-forms": "error",
     "chem-form-twice": "error",
     "chem-form-circle": "error",
@@ -136,6 +135,10 @@ def check_reactions(collection: Collection) -> list[Finding]:
     for ion in collection.ions.values():
         formula = read_formula(ion.formula, collection, ion.origin, "formula")
         findings += [formula] if isinstance(formula, Finding) else []
+    for table in collection.formation.values():
+        for i, of in enumerate(table.entries):
+            formula = read_formula(of, collection, table.origin, "entries", i, "of")
+            findings += [formula] if isinstance(formula, Finding) else []
     makers: dict[str, SideReaction] = {}
     for reaction in collection.side_reactions.values():
         findings += _side(reaction, known, collection)
@@ -186,15 +189,10 @@ def _side(side: SideReaction, known: frozenset[str], collection: Collection) -> 
 
 
 def _no_pairs(statement: NoPairs, known: frozenset[str]) -> Iterator[Finding]:
-    for key, ions, sign in (("cations", statement.cations, "+"), ("anions", statement.anions, "-")):
+    for key, ions in (("cations", statement.cations), ("anions", statement.anions)):
         for i, ion in enumerate(ions):
-            place = statement.origin.place(key, i)
             if ion not in known:
-                yield unknown_form(ion, place)
-            elif not ion.endswith(sign):
-                found = f"{quoted(ion)} among the {key}"
-                cure = f"{key} end with {sign}: move it to the other list"
-                yield Finding("error", "chem-ion-charge", place, found, cure)
+                yield unknown_form(ion, statement.origin.place(key, i))
 
 
 def _electrolyte(

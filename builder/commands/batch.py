@@ -16,6 +16,7 @@ LARGEST_FILE = 10_000_000  # bytes
 LONGEST_CELL = 1_000  # characters
 
 Question = TypeVar("Question")
+Wrong = tuple[int, str]  # line and what is wrong there
 
 
 @dataclass(frozen=True)
@@ -33,19 +34,19 @@ class Row:
 def questions(path: Path, columns: Sequence[str], ask: Callable[[Row], Question]) -> list[Question]:
     """Every row asked for, in order. CommandError names every line that cannot be."""
     asked: list[Question] = []
-    wrong: list[str] = []
+    wrong: list[Wrong] = []
     shown = quoted(str(path))
     for row in _rows(path, columns, shown, wrong):
         try:
             asked.append(ask(row))
         except CommandError as problem:
-            wrong += [f"{shown}, line {row.line}: {message}" for message in problem.messages]
+            wrong.append((row.line, str(problem)))
     if wrong:
-        raise CommandError(*wrong)
+        raise CommandError(*(f"{shown}, line {line}: {what}" for line, what in sorted(wrong)))
     return asked
 
 
-def _rows(path: Path, columns: Sequence[str], shown: str, wrong: list[str]) -> list[Row]:
+def _rows(path: Path, columns: Sequence[str], shown: str, wrong: list[Wrong]) -> list[Row]:
     """The rows that have the right shape; what is wrong with the others is appended to `wrong`."""
     reader = csv.reader(io.StringIO(_text(path, shown), newline=""), strict=True)
     head: list[str] | None = None
@@ -57,12 +58,12 @@ def _rows(path: Path, columns: Sequence[str], shown: str, wrong: list[str]) -> l
             if head is None:
                 head = _head(cells, columns, shown)
             elif problem := _shape(cells, head):
-                wrong.append(f"{shown}, line {reader.line_num}: {problem}")
+                wrong.append((reader.line_num, problem))
             else:
                 stripped = map(str.strip, cells)
                 rows.append(Row(reader.line_num, dict(zip(head, stripped, strict=False))))
     except csv.Error as problem:
-        wrong.append(f"{shown}, line {reader.line_num}: not CSV ({problem})")
+        wrong.append((reader.line_num, f"not CSV ({problem})"))
     if not rows and not wrong:
         raise CommandError(f"{shown} has no rows; write {','.join(columns)} and a row below it")
     return rows

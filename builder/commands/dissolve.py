@@ -105,7 +105,7 @@ def record(asked: Answer) -> dict[str, Any]:
         "activity_model": it.activity_model or None,
         "ph": number(it.ph),
         "standard_uncertainty_log10": number(it.standard_uncertainty_log10),
-        "textbook_mol_per_kg": number(it.textbook_mol_per_kg),
+        "textbook_mol_per_kg": number(it.textbook_mol_per_kg) if computed else None,
         "state": it.state,
         "reason": it.reason or None,
         "lower_95": number(low),

@@ -12,6 +12,7 @@ from builder.commands.telling import (
     celsius,
     digits,
     give_or_take,
+    paragraph,
     plain,
     table,
     typographic,
@@ -29,10 +30,8 @@ def text(reference: Reference, asked: Answer) -> str:
     it = asked.shown
     parts = [_title(reference, asked)]
     if it.state == "refused":
-        lines: Lines = [("refused", typographic(it.reason))]
-        if it.textbook_mol_per_kg is not None:
-            lines.append(("textbook", _textbook_alone(it)))
-        parts.append(aligned([*lines, *_cautions(reference, it)]))
+        refused = ("refused", typographic(it.reason))
+        parts.append(aligned([refused, *_cautions(reference, it)]))
         return "\n".join(parts)
     parts.append(aligned(_amounts(reference, asked)))
     parts.append(_forms(it))
@@ -101,27 +100,18 @@ def _metal_interval(reference: Reference, asked: Answer) -> tuple[float, float] 
 
 
 def _textbook(asked: Answer) -> Lines:
-    simple, full = asked.full.textbook_mol_per_kg, asked.full.solubility_mol_per_kg
+    """The other of the two answers, and the factor between them."""
     if asked.textbook_asked:
-        if full is None:
-            return [("full answer", f"refused: {typographic(asked.full.reason)}")]
-        told = f"{digits(full)} mol/kg"
-    elif simple is None:
-        return []
+        label, other, tail = "full answer", asked.full.solubility_mol_per_kg, ""
     else:
-        told = f"{digits(simple)} mol/kg from free ions and concentrations"
+        label, other = "textbook", asked.full.textbook_mol_per_kg
+        tail = " from free ions and concentrations"
+    if other is None:
+        return [(label, f"refused: {typographic(asked.full.reason)}")]
+    told = f"{digits(abs(other))} mol/kg{' comes out' if other < 0.0 else ''}{tail}"
     if asked.factor is not None:
         told += f"; the full answer is {digits(asked.factor)} times the textbook's"
-    return [("full answer" if asked.textbook_asked else "textbook", told)]
-
-
-def _textbook_alone(it: Dissolved) -> str:
-    simple = it.textbook_mol_per_kg
-    assert simple is not None  # asked by the caller
-    return (
-        f"{digits(simple)} mol/kg from free ions and concentrations, "
-        "which does not hold in such a solution"
-    )
+    return [(label, told)]
 
 
 def _forms(it: Dissolved) -> str:
@@ -140,9 +130,9 @@ def _forms(it: Dissolved) -> str:
     ]
     head = ("dissolved form", f"share of all {metal}", "mol/kg", "activity coefficient")
     others = ", ".join(
-        f"{to_unicode(f.form)} {digits(f.mol_per_kg)}" for f in it.forms if f.share is None
+        f"{to_unicode(f.form)}\u00a0{digits(f.mol_per_kg)}" for f in it.forms if f.share is None
     )
-    return table(head, rows) + f"without {metal}, mol/kg: {others}\n"
+    return table(head, rows) + paragraph(f"without {metal}, mol/kg: {others}")
 
 
 def _grounds(reference: Reference, it: Dissolved) -> Lines:
@@ -168,7 +158,7 @@ def _grounds(reference: Reference, it: Dissolved) -> Lines:
         lines.append(
             (
                 "uncertainty",
-                f"of log10 of the solubility {digits(it.standard_uncertainty_log10, 2)} "
+                f"of log10 of the amount {digits(it.standard_uncertainty_log10, 2)} "
                 f"(one standard deviation); its variance: {largest}",
             )
         )

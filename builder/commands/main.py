@@ -49,20 +49,18 @@ def _outcome(arguments: Sequence[str]) -> Outcome:
 
         return carry_out(arguments)
     except CommandError as wrong:
-        record = {"error": str(wrong), "solids": wrong.solids}
-        return Outcome(
-            COMMAND_WRONG,
-            json.dumps(record, indent=2) + "\n" if as_json else "",
-            "".join(map(_line, wrong.messages)),
-        )
+        out = _error_json(str(wrong), wrong.solids) if as_json else ""
+        return Outcome(COMMAND_WRONG, out, "".join(map(_line, wrong.messages)))
     except DataError as wrong:
-        record = {"error": str(wrong), "solids": ()}
-        return Outcome(
-            DATA_WRONG, json.dumps(record, indent=2) + "\n" if as_json else "", wrong.report
-        )
+        out = _error_json(str(wrong), ()) if as_json else ""
+        return Outcome(DATA_WRONG, out, wrong.report)
     except OSError as wrong:
         where = f"{wrong.filename}: " if wrong.filename else ""
         return Outcome(COMMAND_WRONG, "", _line(f"{where}{wrong.strerror or wrong}"))
+
+
+def _error_json(message: str, solids: Sequence[str]) -> str:
+    return json.dumps({"error": message, "solids": solids}, indent=2) + "\n"
 
 
 def _deliver(outcome: Outcome) -> int:

@@ -87,10 +87,21 @@ def aligned(lines: Sequence[tuple[str, str]]) -> str:
     width = max(len(left) for left, _ in lines)
     out: list[str] = []
     for left, right in lines:
-        whole_numbers = right.replace(" × ", "\u00a0×\u00a0")  # not folded inside a number
-        for i, line in enumerate(textwrap.wrap(whole_numbers, LINE_WIDTH) or [""]):
-            out.append(f"{'' if i else left:{width}}  {line}".rstrip().replace("\u00a0", " "))
+        for i, line in enumerate(_folded(right, LINE_WIDTH)):
+            out.append(f"{'' if i else left:{width}}  {line}".rstrip())
     return "\n".join(out) + "\n"
+
+
+def paragraph(text: str) -> str:
+    """Lines of a text that stands by itself."""
+    return "\n".join(_folded(text, LINE_WIDTH)) + "\n"
+
+
+def _folded(text: str, width: int) -> list[str]:
+    """Lines of at most `width` characters, broken at spaces but never inside a number."""
+    held_together = text.replace(" × ", "\u00a0×\u00a0")
+    lines = textwrap.wrap(held_together, width, break_on_hyphens=False)
+    return [line.replace("\u00a0", " ") for line in lines or [""]]
 
 
 def table(head: Sequence[str], rows: Sequence[Sequence[str]]) -> str:

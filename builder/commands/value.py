@@ -99,9 +99,16 @@ def _constant(evaluated: Evaluated, value: CurveValue) -> list[tuple[str, str]]:
     return [
         ("log10 K", log10_k),
         ("K", f"{k}, of activities at zero ionic strength"),
-        ("uncertainty", f"that of the constant at its own temperature is {evaluated.u_basis}"),
+        ("uncertainty", _basis(evaluated)),
         ("range", range_words(evaluated, value)),
     ]
+
+
+def _basis(evaluated: Evaluated) -> str:
+    """What the uncertainty rests on."""
+    if evaluated.law.law.kind in ("expression", "points"):
+        return "that of the function of temperature"
+    return f"of the determination: {evaluated.u_basis}; the law adds its own away from it"
 
 
 def range_words(evaluated: Evaluated, value: CurveValue) -> str:

@@ -38,6 +38,7 @@ def pages(reference: Reference, frame: Frame, renderer: Renderer) -> dict[str, b
         "house": [(e, [row(e, t).constant for t in HOUSE_C]) for e in salts],
         "house_c": HOUSE_C,
         "reference_c": REFERENCE_C,
+        "brief": brief,
         "aligned": aligned,
         "address": salt_address,
     }
@@ -51,6 +52,11 @@ def row(evaluated: Evaluated, t_celsius: float) -> Row:
         nothing = CurveValue(t_celsius, "refused", 0.0, None, None, 1.96, evaluated.refused)
         return Row(evaluated, constant_text(nothing), "")
     return Row(evaluated, constant_text(at(curve, t_celsius)), ratio(curve, t_celsius))
+
+
+def brief(constant: ConstantText) -> str:
+    """The state in the few words a cell has room for."""
+    return constant.state_words.replace(" the range of the law", " range")
 
 
 def ratio(curve: Curve, t_celsius: float) -> str:

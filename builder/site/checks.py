@@ -6,12 +6,15 @@ from collections import Counter
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
+from builder.chem.curve import at
 from builder.chem.rounding import display, fixed, with_uncertainty
 from builder.collection.choice import Evaluated
+from builder.collection.laws import REFERENCE_C
 from builder.collection.reference import Reference
 from builder.read.findings import LEVELS, Finding
 from builder.site.frame import Frame, aligned, salt_address, words_of_count
 from builder.site.render import Renderer
+from builder.site.words import constant_text
 
 ADDRESS = "checks.html"
 
@@ -45,11 +48,15 @@ class Share:
 
 @dataclass(frozen=True)
 class Support:
-    """How a choice is supported, as texts. spread: robust, of the independent families."""
+    """How a choice is supported, as texts. spread: robust, of the independent families.
+
+    by_law: log10 K of the chosen law at 25 °C, which other values than the chosen one may shape.
+    """
 
     evaluated: Evaluated
     log10_k: str
     u: str
+    by_law: str
     evidence: str
     agreeing: int
     families: int
@@ -123,10 +130,13 @@ def support(evaluated: Evaluated) -> Support:
             value = fixed(chosen.log10_k, 2)
         else:
             value, u = with_uncertainty(chosen.log10_k, evaluated.u)
+    curve = evaluated.law.curve
+    by_law = "" if curve is None else constant_text(at(curve, REFERENCE_C)).log10_k
     return Support(
         evaluated,
         display(value) if value else "",
         display(u) if u else "not evaluated",
+        by_law,
         chosen.determination.citation.evidence.replace("-", " "),
         len(agreement.agreeing),
         len(agreement.families),

@@ -34,6 +34,7 @@ class Line:
 def pages(reference: Reference, frame: Frame, renderer: Renderer) -> dict[str, bytes]:
     """The find page under its address."""
     lines = [line(reference, salt_id) for salt_id in reference.salts]
+    lines.sort(key=lambda e: (e.evaluated.salt.formula, e.evaluated.salt.name))
     context = frame.context("Find a salt", 0, ADDRESS) | {
         "groups": groups(reference, lines),
         "count": words_of_count(len(lines), "salt", "salts"),
@@ -60,14 +61,12 @@ def line(reference: Reference, salt_id: str) -> Line:
 
 
 def groups(reference: Reference, lines: list[Line]) -> list[tuple[str, str, list[Line]]]:
-    """(cation, its name, its salts), by name and within it by formula."""
+    """(cation, its name, its salts), by name; salts in the order given."""
     ions = reference.collection.ions
     of: dict[str, list[Line]] = {}
     for entry in lines:
         of.setdefault(entry.cation, []).append(entry)
     named = [(ion, ions[ion].name.removesuffix(" ion"), entries) for ion, entries in of.items()]
-    for _, _, entries in named:
-        entries.sort(key=lambda e: (e.evaluated.salt.formula, e.evaluated.salt.name))
     return sorted(named, key=lambda group: group[1])
 
 

@@ -84,6 +84,8 @@ def citation(source: Source) -> Entry:
         for key, words in (("volume", "vol. "), ("issue", "no. "), ("page", "pp. "))
         if text(key)
     ]
+    if "-" not in text("page"):
+        numbers = [n.replace("pp. ", "p. ") for n in numbers]
     issued = facts.get("issued")
     return Entry(
         id=source.id,

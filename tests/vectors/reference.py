@@ -274,12 +274,16 @@ class Search:
             if self.calculated(ionic) < ionic:
                 break
             if ionic >= top:
+                if self.solutes >= self.MOST_SOLUTES or self.limit > top:
+                    raise Unsolved("more dissolved than any solution holds")
                 return None
             low, ionic = ionic, GRID * ionic
         high = ionic
         for _ in range(45):
             middle = 0.5 * (low + high)
             low, high = (low, middle) if self.calculated(middle) < middle else (middle, high)
+        if self.solutes >= self.MOST_SOLUTES:
+            raise Unsolved("more dissolved than any solution holds")
         return Point(
             [mpf(float(v)) for v in self.x],
             [mpf(float(v)) for v in self.s],
