@@ -100,7 +100,15 @@ _SCALARS = ("t_celsius", "model", "limit")
 
 def single(problem: Mapping[str, Any]) -> Problem:
     """A stack of one from the JSON form. Raises KeyError or ValueError on a malformed mapping."""
-    return Problem(**{f.name: np.asarray([problem[f.name]], dtype=float) for f in fields(Problem)})
+    arrays = {f.name: np.asarray([problem[f.name]], dtype=float) for f in fields(Problem)}
+    if arrays["hold"].size == 0:  # no hold: JSON's [] does not say how wide its rows would be
+        bases = arrays["total"].shape[1]
+        arrays |= {
+            "hold": np.zeros((1, 0, bases)),
+            "hold_law": np.zeros((1, 0, 7)),
+            "exchange": np.zeros((1, 0, bases)),
+        }
+    return Problem(**arrays)
 
 
 def as_json(problem: Problem, index: int = 0) -> dict[str, Any]:

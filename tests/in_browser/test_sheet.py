@@ -125,7 +125,9 @@ def test_a_solution_supersaturated_with_another_solid_says_so(page: Page, site: 
     assert "supersaturated with calcium sulfate dihydrate" in page.inner_text("#also")
 
 
-@pytest.mark.parametrize("address", ["#t=37&colour=red", "#t=hot", "#t=37&with=Unobtainium:1mol/kg"])
+@pytest.mark.parametrize(
+    "address", ["#t=37&colour=red", "#t=hot", "#t=37&with=Unobtainium:1mol/kg"]
+)
 def test_unknown_parts_of_the_address_are_refused_in_words(
     address: str, page: Page, site: Path
 ) -> None:

@@ -26,7 +26,13 @@ def test_code(check: str, repository: Path) -> None:
 def test_no_file_names_a_machine_or_skips_a_test(repository: Path) -> None:
     """No path of a machine in any text file, and no test that can be passed over."""
     home = str(repository.parent)
-    words = [home + "/", "pytest." + "skip", "mark." + "skip", "mark." + "xfail", "import" + "orskip"]
+    words = [
+        home + "/",
+        "pytest." + "skip",
+        "mark." + "skip",
+        "mark." + "xfail",
+        "import" + "orskip",
+    ]
     listed = subprocess.run(
         ["git", "ls-files"], cwd=repository, capture_output=True, text=True, check=False
     ).stdout.split()
