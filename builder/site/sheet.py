@@ -11,7 +11,8 @@ from builder.chem.curve import Curve, at
 from builder.chem.rounding import display, fixed, significant
 from builder.chem.temperature import basis
 from builder.chem.water import kelvin
-from builder.collection.dissolve import Dissolved, dissolve, metal_of
+from builder.collection.answer import Dissolved
+from builder.collection.dissolve import dissolve, metal_of
 from builder.collection.figures import Reported
 from builder.collection.identity import digest, figure_digest, record_digest
 from builder.collection.laws import LawCurve, plain_van_t_hoff

@@ -61,6 +61,7 @@ def program(arguments: Sequence[str], **options: Any) -> subprocess.Popen[str]:
         "encoding": "utf-8",
     }
     environment = {**os.environ, "PYTHONPATH": str(ROOT), **options.pop("env", {})}
+    environment.pop("PYTHONUNBUFFERED", None)  # streams as a user has them
     return subprocess.Popen(
         [sys.executable, "-m", "builder", *arguments], env=environment, **{**piped, **options}
     )

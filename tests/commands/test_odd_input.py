@@ -3,12 +3,15 @@
 from __future__ import annotations
 
 import json
+import math
 from pathlib import Path
 
 import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 from running import here, one_line, there
+
+from builder.commands.telling import json_text, number
 
 WORDS = [
     "inspect", "value", "dissolve", "PbSO4", "gypsum", "CaSO4.2H2O", "37", "--at", "--at=25",
@@ -120,6 +123,11 @@ def test_bytes_that_are_no_text_as_a_program() -> None:
     assert ran.code == 2
     assert one_line(ran.err)
     assert ran.json["solids"] == []
+
+
+@pytest.mark.parametrize("x", [None, math.nan, math.inf, -math.inf])
+def test_what_is_no_number_is_null(x: float | None) -> None:
+    assert json_text(number(x)) == "null\n"
 
 
 @pytest.mark.parametrize(

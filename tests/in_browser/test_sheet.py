@@ -28,6 +28,7 @@ QUESTIONS = [
     ("thallium-chloride", 37.0, "KCl", "0.05 mol/kg"),
     ("brucite", 25.0, "NaOH", "0.01 mol/kg"),
     ("silver-chromate", 25.0, "AgNO3", "0.001 mol/kg"),
+    ("silver-chloride", 25.0, "AgNO3", "0.01 mol/kg"),
 ]
 
 
