@@ -20,8 +20,8 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, fields
-from typing import Any
+from dataclasses import dataclass, fields, replace
+from typing import Any, TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
@@ -114,6 +114,22 @@ def single(problem: Mapping[str, Any]) -> Problem:
 def as_json(problem: Problem, index: int = 0) -> dict[str, Any]:
     """One problem of a stack in the JSON form."""
     return {f.name: getattr(problem, f.name)[index].tolist() for f in fields(Problem)}
+
+
+Stack = TypeVar("Stack", Problem, Solution)
+
+
+def one(stacked: Stack, index: int) -> Stack:
+    """One problem or solution of a stack, as a stack of one."""
+    rows = {f.name: getattr(stacked, f.name)[index : index + 1] for f in fields(stacked)}
+    return replace(stacked, **rows)
+
+
+def at_temperatures(problem: Problem, temperatures: Sequence[float]) -> Problem:
+    """One problem (a stack of one) at several temperatures in °C."""
+    count = len(temperatures)
+    rows = {f.name: np.repeat(getattr(problem, f.name), count, axis=0) for f in fields(Problem)}
+    return Problem(**{**rows, "t_celsius": np.asarray(temperatures, dtype=float)})
 
 
 def stack(problems: Sequence[Problem]) -> Problem:

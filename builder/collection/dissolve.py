@@ -9,7 +9,15 @@ from dataclasses import replace
 from builder.chem.curve import CurveValue, at
 from builder.chem.equilibrium import solve
 from builder.chem.formula import parse_formula
-from builder.chem.problem import BEYOND_LIMIT, COMPUTED, MODEL_NAMES, Problem, Solution
+from builder.chem.problem import (
+    BEYOND_LIMIT,
+    COMPUTED,
+    MODEL_NAMES,
+    Problem,
+    Solution,
+    at_temperatures,
+    one,
+)
 from builder.chem.temperature import LN10
 from builder.chem.water import density_kg_m3
 from builder.collection.answer import Dissolved, FormAmount, OtherSolid
@@ -36,34 +44,66 @@ def dissolve(
     Never raises for a known salt, known electrolytes and any temperature: what can not be
     answered is refused in words.
     """
+    return dissolve_series(reference, salt_id, (t_celsius,), additions)[0]
+
+
+def dissolve_series(
+    reference: Reference, salt_id: str, temperatures: Sequence[float], additions: Additions = ()
+) -> list[Dissolved]:
+    """The same question at several temperatures, solved as one stack."""
     evaluated = reference.salts[salt_id]
-    if evaluated.law.curve is None:
-        nothing = CurveValue(t_celsius, "refused", 0.0, None, None, 1.96, evaluated.refused)
-        return Dissolved(salt_id, t_celsius, "refused", evaluated.refused, nothing)
-    value = at(evaluated.law.curve, t_celsius)
-    if value.log10_k is None:
-        return Dissolved(salt_id, t_celsius, "refused", value.reason, value)
+    curve = evaluated.law.curve
+    if curve is None:
+        reason = evaluated.refused
+        blank = CurveValue(25.0, "refused", 0.0, None, None, 1.96, reason)
+        return [_refused(salt_id, replace(blank, t_celsius=t), reason) for t in temperatures]
+    values = [at(curve, t) for t in temperatures]
+    given = [(m, reference.additions[formula]) for formula, m in additions if m > 0.0]
     solid = reference.dissolving[salt_id]
-    given = [(reference.additions[formula], m) for formula, m in additions if m > 0.0]
     try:
-        mix = mixture(
-            reference.forms, reference.collection, solid, [g for g, _ in given],
-            evaluated.salt.needs,
-        )  # fmt: skip
+        made = [part for _, part in given]
+        mix = mixture(reference.forms, reference.collection, solid, made, evaluated.salt.needs)
     except NotKnownError as unknown:
-        return Dissolved(salt_id, t_celsius, "refused", str(unknown), value)
-    totals = add([(m, made) for made, m in given], {}).base
-    asked = salt_problem(reference, salt_id, mix, t_celsius, totals)
+        return [_refused(salt_id, v, str(unknown)) for v in values]
+    open_values = [v for v in values if v.log10_k is not None]
+    totals = add(given, {}).base
+    answers = iter(_solved(reference, salt_id, open_values, mix, totals))
+    return [_refused(salt_id, v, v.reason) if v.log10_k is None else next(answers) for v in values]
+
+
+def _refused(salt_id: str, value: CurveValue, reason: str) -> Dissolved:
+    # a constant that is itself refused says why; it is the first reason
+    return Dissolved(salt_id, value.t_celsius, "refused", value.reason or reason, value)
+
+
+def _solved(
+    reference: Reference,
+    salt_id: str,
+    values: Sequence[CurveValue],
+    mix: Mixture,
+    totals: Mapping[str, float],
+) -> list[Dissolved]:
+    if not values:
+        return []
+    temperatures = [v.t_celsius for v in values]
+    asked = at_temperatures(salt_problem(reference, salt_id, mix, 25.0, totals), temperatures)
     answer = solve(asked)
-    simple = textbook_amount(reference, salt_id, mix, t_celsius, totals)
-    if answer.state[0] != COMPUTED:
+    book = salt_problem(reference, salt_id, textbook(mix), 25.0, totals)
+    simple = solve(at_temperatures(book, temperatures))
+    out: list[Dissolved] = []
+    for i, value in enumerate(values):
+        amount = float(simple.amount[i, 0]) if simple.state[i] == COMPUTED else None
+        if answer.state[i] == COMPUTED:
+            rows = (one(asked, i), one(answer, i))
+            out.append(_answer(reference, salt_id, value, mix, *rows, amount))
+            continue
         reason = (
             f"the ionic strength would pass {mix.limit:g} mol/kg, where the activity model ends"
-            if answer.state[0] == BEYOND_LIMIT
+            if answer.state[i] == BEYOND_LIMIT
             else "the engine found no solution"
         )
-        return Dissolved(salt_id, t_celsius, "refused", reason, value, textbook_mol_per_kg=simple)
-    return _answer(reference, salt_id, value, mix, asked, answer, simple)
+        out.append(replace(_refused(salt_id, value, reason), textbook_mol_per_kg=amount))
+    return out
 
 
 def salt_problem(
@@ -79,18 +119,6 @@ def salt_problem(
     solid = reference.dissolving[salt_id]
     side_laws = {name: c.law for name, c in reference.side_curves.items()}
     return problem(mix, t_celsius, totals, [(solid, hold_law(curve.law, solid, side_laws))])
-
-
-def textbook_amount(
-    reference: Reference,
-    salt_id: str,
-    mix: Mixture,
-    t_celsius: float,
-    totals: Mapping[str, float],
-) -> float | None:
-    """mol/kg from free ions and concentrations alone, for comparison; None without a solution."""
-    answer = solve(salt_problem(reference, salt_id, textbook(mix), t_celsius, totals))
-    return float(answer.amount[0, 0]) if answer.state[0] == COMPUTED else None
 
 
 def metal_of(reference: Reference, salt_id: str) -> str:

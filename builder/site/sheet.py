@@ -12,7 +12,7 @@ from builder.chem.rounding import display, fixed, significant
 from builder.chem.temperature import basis
 from builder.chem.water import kelvin
 from builder.collection.answer import Dissolved
-from builder.collection.dissolve import dissolve, metal_of
+from builder.collection.dissolve import dissolve, dissolve_series, metal_of
 from builder.collection.figures import Reported
 from builder.collection.identity import digest, figure_digest, record_digest
 from builder.collection.laws import LawCurve, plain_van_t_hoff
@@ -140,8 +140,9 @@ def _percent(share: float) -> str:
 def _table(reference: Reference, salt_id: str) -> list[TableRow]:
     temperatures = sorted({*(5.0 * i for i in range(21)), *HOUSE_TEMPERATURES})
     rows: list[TableRow] = []
-    for t in temperatures:
-        answer = dissolve(reference, salt_id, t)
+    for t, answer in zip(
+        temperatures, dissolve_series(reference, salt_id, temperatures), strict=True
+    ):
         amount = amount_text(answer)
         rows.append(
             TableRow(
