@@ -16,7 +16,8 @@ var Sparingly = Sparingly || {};
     var low = curve.range_c[0], high = curve.range_c[1];
     var beyond = Math.max(low - tCelsius, tCelsius - high, 0);
     var answer = {
-      state: 'refused', beyond_by_k: beyond, log10_k: null, u: null, interval: null
+      state: 'refused', beyond_by_k: beyond, log10_k: null, u: null, interval: null,
+      coverage_factor: curve.coverage_factor
     };
     if (!(tCelsius >= 0 && tCelsius <= 100) || beyond > curve.carries_k) {
       return answer;

@@ -178,6 +178,7 @@ var Sparingly = Sparingly || {};
       solubility_mol_per_l: s * litre,
       solubility_g_per_l: s * litre * data.molar_mass,
       solubility_g_per_l_anhydrous: s * litre * data.molar_mass_anhydrous,
+      metal_mg_per_mol: data.solid.base[data.metal] * data.metal_molar_mass * 1000,
       metal_mg_per_kg: metalMg,
       metal_mg_per_l: metalMg * litre,
       forms: forms,

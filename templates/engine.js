@@ -25,6 +25,7 @@ var Sparingly = Sparingly || {};
   var INNER_STEPS = 200;
   var COUPLED_STEPS = 40;
   var SCAN_STEPS = 120;
+  var ALLOWANCE = 1.000001; // 0.5 mol/kg of a salt is not beyond 0.5 for the H+ and OH- of water
   var MOST_SOLUTES = 20; // mol/kg: beyond it the scan holds the activity of water
   var CONVERGED = 1e-13; // balance error relative to the sum of absolute terms
   var ACCEPTED = 1e-12;
@@ -54,11 +55,13 @@ var Sparingly = Sparingly || {};
     var slopes = S.water.debyeHuckel(problem.t_celsius);
     var model = problem.model;
     var bases = problem.total.length;
-    var z2 = problem.charge.map(function (z) { return z * z; });
-    var strength = z2.map(function (z) { return model === IDEAL ? 0 : slopes.A * z; });
+    // one kind of array throughout: the browser then compiles the loops once
+    function each(list, change) { return Float64Array.from(list, change); }
     function lnK(law) { return LN10 * log10K(law, t); }
     // an ideal solution has an ideal solvent too: no water term
     function wet(nu) { return model === IDEAL ? 0 : nu; }
+    var z2 = each(problem.charge, function (z) { return z * z; });
+    var strength = each(z2, function (z) { return model === IDEAL ? 0 : slopes.A * z; });
     var hold = flat(problem.hold, bases);
     var exchange = flat(problem.exchange, bases);
     return {
@@ -66,27 +69,27 @@ var Sparingly = Sparingly || {};
       bases: bases,
       holds: problem.hold.length,
       nu: flat(problem.stoichiometry, bases),
-      nuWater: problem.water.map(wet),
+      nuWater: each(problem.water, wet),
       z2: z2,
-      lnK: problem.law.map(lnK),
+      lnK: each(problem.law, lnK),
       strength: strength,
-      p: problem.size.map(function (size) {
+      p: each(problem.size, function (size) {
         return model === EXTENDED ? slopes.B * size : model === DAVIES ? 1 : 0;
       }),
-      q: problem.linear.map(function (linear, i) {
+      q: each(problem.linear, function (linear, i) {
         if (model === DAVIES && z2[i] > 0) {
           return 0.3 * strength[i];
         }
         return model === IDEAL ? 0 : linear;
       }),
-      total: problem.total,
+      total: each(problem.total),
       hold: hold,
-      holdWater: problem.hold_water.map(wet),
-      holdLnK: problem.hold_law.map(lnK),
+      holdWater: each(problem.hold_water, wet),
+      holdLnK: each(problem.hold_law, lnK),
       exchange: exchange,
       // every hold exchanges what it holds: only then is the problem convex
       symmetric: hold.every(function (r, at) { return r === exchange[at]; }),
-      limit: model === IDEAL ? Infinity : problem.limit
+      limit: model === IDEAL ? Infinity : problem.limit * ALLOWANCE
     };
   }
 
@@ -149,6 +152,14 @@ var Sparingly = Sparingly || {};
     return right;
   }
 
+  function multiplied(a, factors) {
+    var out = new Float64Array(a.length);
+    for (var i = 0; i < a.length; i += 1) {
+      out[i] = a[i] * factors[i];
+    }
+    return out;
+  }
+
   function transposed(matrix, n) {
     return matrix.map(function (ignored, at) { return matrix[(at % n) * n + Math.floor(at / n)]; });
   }
@@ -204,7 +215,11 @@ var Sparingly = Sparingly || {};
   // Largest balance error relative to the sum of absolute terms.
   function residual(n, m, s) {
     var b = balance(n, m, s);
-    return largestOf(b.error.map(function (e, i) { return e / b.size[i]; }));
+    var worst = 0;
+    for (var i = 0; i < n.bases; i += 1) {
+      worst = Math.max(worst, Math.abs(b.error[i]) / b.size[i]);
+    }
+    return worst;
   }
 
   // How far hold k is from being met, in ln K.
@@ -325,7 +340,7 @@ var Sparingly = Sparingly || {};
     solveLinear(matrix, right);
     return {
       x: right.subarray(0, n.bases),
-      s: right.subarray(n.bases).map(function (s) { return s * unit; })
+      s: right.slice(n.bases).map(function (s) { return s * unit; })
     };
   }
 
@@ -411,8 +426,11 @@ var Sparingly = Sparingly || {};
     var matrix = jacobian(n, m, state.ionic);
     var rows = new Float64Array(order).fill(1);
     var columns = new Float64Array(order).fill(1);
-    var unit = sizes.reduce(function (least, v) { return Math.min(least, v); });
-    sizes.forEach(function (size, b) { rows[b] = 1 / size; });
+    var unit = Infinity;
+    for (var b = 0; b < n.bases; b += 1) {
+      rows[b] = 1 / sizes[b];
+      unit = Math.min(unit, sizes[b]);
+    }
     columns.fill(unit, n.bases, n.bases + n.holds);
     rows[order - 2] = 1 / state.ionic;
     columns[order - 2] = state.ionic;
@@ -438,14 +456,15 @@ var Sparingly = Sparingly || {};
       var m = molality(n, state.x, state.ionic, state.solutes);
       var bal = balance(n, m, state.s);
       var j = scaled(n, state, m, bal.size);
-      var right = Float64Array.from({ length: order }, function (ignored, r) {
-        return r < n.bases ? -bal.error[r] : r < byI ? gap(n, r - n.bases, state.x, state.solutes) : 0;
-      });
+      var right = new Float64Array(order);
+      for (var r = 0; r < byI; r += 1) {
+        right[r] = r < n.bases ? -bal.error[r] : gap(n, r - n.bases, state.x, state.solutes);
+      }
       right[byI] = state.ionic - 0.5 * dot(n.z2, 0, m, 0, n.forms);
       right[byW] = state.solutes - sumOf(m);
-      right = right.map(function (v, r) { return v * j.rows[r]; });
+      right = multiplied(right, j.rows);
       state.error = largestOf(right);
-      var step = solveLinear(j.matrix, right).map(function (v, c) { return v * j.columns[c]; });
+      var step = multiplied(solveLinear(j.matrix, right), j.columns);
       var largest = Math.max(largestOf(step.subarray(0, n.bases)), Math.abs(step[byI]) / state.ionic);
       if (!Number.isFinite(largest)) {
         return false;
@@ -540,9 +559,7 @@ var Sparingly = Sparingly || {};
     var j = scaled(n, state, m, balance(n, m, state.s).size);
     var unit = new Float64Array(order);
     unit[n.bases] = j.columns[n.bases];
-    var adjoint = solveLinear(transposed(j.matrix, order), unit).map(function (v, r) {
-      return v * j.rows[r];
-    });
+    var adjoint = multiplied(solveLinear(transposed(j.matrix, order), unit), j.rows);
     return {
       by_form: Array.from(m, function (mi, i) {
         // d(equations)/d ln K_i = m_i times (ν_i, 0, z²/2, 1); of a hold: -1 in its own row

@@ -133,9 +133,10 @@
     put('mg', text.metal_mg_per_l);
     put('mg-low', text.low_mg_per_l);
     put('mg-high', text.high_mg_per_l);
+    el('comes-out').hidden = !(answer.solubility_mol_per_kg < 0);
     put('mol', text.mol_per_kg);
     put('g', text.g_per_l);
-    el('textbook').hidden = !computed;
+    el('textbook').hidden = !text.factor;
     put('textbook-mol', computed ? S.words.shown(answer.textbook_mol_per_kg) : '');
     put('factor', text.factor);
     showAlso(answer);

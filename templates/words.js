@@ -43,16 +43,21 @@ var Sparingly = Sparingly || {};
     if (answer.state !== 'computed') {
       return out;
     }
-    out.mol_per_kg = shown(answer.solubility_mol_per_kg);
+    var s = answer.solubility_mol_per_kg, u = answer.standard_uncertainty_log10;
+    out.mol_per_kg = shown(Math.abs(s));
     out.metal_mg_per_l = shown(answer.metal_mg_per_l);
-    out.g_per_l = shown(answer.solubility_g_per_l);
-    if (answer.standard_uncertainty_log10 !== null) {
-      var half = 1.96 * answer.standard_uncertainty_log10;
-      out.low_mg_per_l = shown(answer.metal_mg_per_l * Math.pow(10, -half));
-      out.high_mg_per_l = shown(answer.metal_mg_per_l * Math.pow(10, half));
+    out.g_per_l = shown(Math.abs(answer.solubility_g_per_l));
+    if (u !== null) {
+      // what was added is exact, what dissolves is not
+      var half = answer.constant.coverage_factor * u;
+      var ends = [s * Math.pow(10, -half), s * Math.pow(10, half)].map(function (bound) {
+        return (bound - s) * answer.metal_mg_per_mol * answer.solubility_mol_per_l / s;
+      }).sort(function (a, b) { return a - b; });
+      out.low_mg_per_l = shown(Math.max(answer.metal_mg_per_l + ends[0], 0));
+      out.high_mg_per_l = shown(answer.metal_mg_per_l + ends[1]);
     }
-    if (answer.textbook_mol_per_kg) {
-      out.factor = shown(answer.solubility_mol_per_kg / answer.textbook_mol_per_kg);
+    if (s > 0 && answer.textbook_mol_per_kg > 0) {
+      out.factor = shown(s / answer.textbook_mol_per_kg);
     }
     return out;
   }

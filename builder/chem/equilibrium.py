@@ -12,6 +12,7 @@ Equilibrium Analysis (1982), ch. 6; sensitivities: implicit function theorem.
 
 from __future__ import annotations
 
+from contextlib import suppress
 from dataclasses import dataclass, fields
 
 import numpy as np
@@ -37,6 +38,9 @@ from builder.chem.water import kelvin
 
 LN10 = temperature.LN10
 LARGEST_STEP = 4.0  # in ln a
+LOWEST_LN_A = -230.0
+ALLOWANCE = 1.000001  # 0.5 mol/kg of a salt is not beyond 0.5 for the H+ and OH- of water
+MOST_SOLUTES = 20.0  # mol/kg: beyond it the scan holds the activity of water
 INNER_STEPS = 200
 COUPLED_STEPS = 40
 SCAN_STEPS = 120
@@ -126,7 +130,7 @@ def _evaluate(problem: Problem) -> _Numbers:
         hold_water=problem.hold_water * keep_water,
         hold_ln_k=LN10 * temperature.log10_k(problem.hold_law, t),
         exchange=problem.exchange,
-        limit=np.where(ideal, np.inf, problem.limit),
+        limit=np.where(ideal, np.inf, problem.limit * ALLOWANCE),
     )
 
 
@@ -146,7 +150,7 @@ def _molality(n: _Numbers, x: Array, ionic: Array, solutes: Array) -> Array:
     ln_water = -MOLAR_MASS_WATER * solutes
     ln_gamma = LN10 * log10_gamma(n.strength, n.p, n.q, ionic)
     ln_m = n.ln_k + np.einsum("pfb,pb->pf", n.nu, x) + n.nu_water * ln_water[:, None] - ln_gamma
-    return np.exp(np.clip(ln_m, -700.0, 700.0))
+    return np.asarray(np.exp(np.clip(ln_m, -700.0, 700.0)))
 
 
 def _solve(matrix: Array, right: Array) -> Array:
@@ -156,7 +160,7 @@ def _solve(matrix: Array, right: Array) -> Array:
     except np.linalg.LinAlgError:
         out = np.full(right.shape, np.nan)
         for i in range(len(matrix)):
-            if np.linalg.matrix_rank(matrix[i]) == matrix.shape[-1]:
+            with suppress(np.linalg.LinAlgError):
                 out[i] = np.linalg.solve(matrix[i], right[i])
         return out
 
@@ -182,6 +186,12 @@ def _inner(n: _Numbers, state: _State) -> None:
         part, rows = n.of(active), state.of(active)
         m = _molality(part, rows.x, rows.ionic, rows.solutes)
         step, s = _inner_step(part, rows, m)
+        # where a hold exchanges something else, the ion exchanged may ask for a negative amount
+        # until the others settle: it must not hold them up, nor go beyond return
+        skew = ~_symmetric(part)
+        limited = np.clip(step, -LARGEST_STEP, LARGEST_STEP)
+        limited = np.maximum(limited, np.minimum(LOWEST_LN_A - rows.x, 0.0))
+        step = np.where(skew[:, None], limited, step)
         largest = np.max(np.abs(step), axis=1)
         damping = np.minimum(1.0, LARGEST_STEP / np.maximum(largest, TINY))
         damping = _descend(part, rows, m, step, damping, largest)
@@ -218,15 +228,19 @@ def _inner_step(n: _Numbers, rows: _State, m: Array) -> tuple[Array, Array]:
     return both[:, :bases], both[:, bases:] * amount[:, None]
 
 
+def _symmetric(n: _Numbers) -> NDArray[np.bool_]:
+    """True where every hold exchanges what it holds: only then is the problem convex."""
+    return np.asarray(np.all(n.hold == n.exchange, axis=(1, 2)))
+
+
 def _descend(
     n: _Numbers, rows: _State, m: Array, step: Array, damping: Array, largest: Array
 ) -> Array:
     """Halve the damping until the convex function falls; small steps need no check."""
     before = np.sum(m, axis=1) - np.einsum("pb,pb->p", n.total, rows.x)
     slope = np.einsum("pfb,pf,pb->p", n.nu, m, step) - np.einsum("pb,pb->p", n.total, step)
-    symmetric = np.all(n.hold == n.exchange, axis=(1, 2))
     # off the plane of the holds the function may have to rise: only descents are checked
-    check = symmetric & (largest > 1e-3) & (slope < 0.0)
+    check = _symmetric(n) & (largest > 1e-3) & (slope < 0.0)
     for _ in range(30):
         x = rows.x + damping[:, None] * step
         trial = _molality(n, x, rows.ionic, rows.solutes)
@@ -267,6 +281,23 @@ def _jacobian(n: _Numbers, m: Array, ionic: Array) -> Array:
     return j
 
 
+def _scaled_jacobian(
+    n: _Numbers, state: _State, m: Array, size: Array
+) -> tuple[Array, Array, Array]:
+    """The Jacobian with rows relative to the size of their equation and columns in the unit of
+    their unknown, and both factors (P, B+H+2): without them, amounts of 1e-20 drown among those
+    of 1."""
+    bases, holds = n.total.shape[1], n.hold.shape[1]
+    ones = np.ones((len(m), holds + 2))
+    row = np.concatenate([1.0 / size, ones], axis=1)
+    row[:, -2] = 1.0 / state.ionic
+    column = np.ones_like(row)
+    column[:, bases : bases + holds] = np.min(size, axis=1)[:, None]
+    column[:, -2] = state.ionic
+    j = _jacobian(n, m, state.ionic) * row[:, :, None] * column[:, None, :]
+    return j, row, column
+
+
 def _coupled(n: _Numbers, state: _State) -> NDArray[np.bool_]:
     """Newton on everything at once. True where it arrives at a root with falling I_calc - I."""
     bases, holds = n.total.shape[1], n.hold.shape[1]
@@ -287,16 +318,8 @@ def _coupled(n: _Numbers, state: _State) -> NDArray[np.bool_]:
         open_i = 0.5 * np.sum(part.z2 * m, axis=1) - rows.ionic
         open_w = np.sum(m, axis=1) - rows.solutes
         wrong = np.concatenate([error, gap, open_i[:, None], open_w[:, None]], axis=1)
-        j = _jacobian(part, m, rows.ionic)
-        # row scaling; s in units of the smallest balance
-        unit = np.min(size, axis=1)
-        row = np.concatenate(
-            [1.0 / size, np.ones_like(gap), 1.0 / rows.ionic[:, None], np.ones((len(m), 1))], axis=1
-        )
-        column = np.ones_like(row)
-        column[:, bases : bases + holds] = unit[:, None]
-        column[:, -2] = rows.ionic
-        step = column * _solve(j * row[:, :, None] * column[:, None, :], -wrong * row)
+        j, row, column = _scaled_jacobian(part, rows, m, size)
+        step = column * _solve(j, -wrong * row)
         largest = np.maximum(
             np.max(np.abs(step[:, :bases]), axis=1), np.abs(step[:, -2]) / rows.ionic
         )
@@ -320,9 +343,10 @@ def _falling(n: _Numbers, state: _State) -> NDArray[np.bool_]:
     """True where I_calc(I) crosses I from above: d I_calc/dI < 1 at the root.
 
     The Schur complement of the I row has the sign of I_calc' - 1: it is read from the inverse of
-    the Jacobian, whose (I, I) entry is 1/(I_calc' - 1).
+    the Jacobian, whose (I, I) entry is 1/(I_calc' - 1); scaling keeps its sign.
     """
-    j = _jacobian(n, _molality(n, state.x, state.ionic, state.solutes), state.ionic)
+    m = _molality(n, state.x, state.ionic, state.solutes)
+    j, _, _ = _scaled_jacobian(n, state, m, _balance(n, m, state.s)[1])
     unit = np.zeros(j.shape[:2])
     unit[:, -2] = 1.0
     return np.asarray(_solve(j, unit)[:, -2] < 0.0)
@@ -341,8 +365,9 @@ def _scan(n: _Numbers, state: _State) -> tuple[NDArray[np.bool_], NDArray[np.boo
         above = ionic >= state.ionic
         low = np.where(above, state.ionic, low)
         high = np.where(above, high, state.ionic)
-        beyond |= above & (state.ionic >= top)
-        state.solutes = solutes
+        # what is not solved at a fixed I says nothing about the limit
+        beyond |= above & (state.ionic >= top) & (state.error < ACCEPTED)
+        state.solutes = np.minimum(solutes, MOST_SOLUTES)
         bracketed = np.isfinite(high)
         climb = np.minimum(np.maximum(ionic, 1.05 * state.ionic), top)
         state.ionic = np.where(bracketed, 0.5 * (low + np.where(bracketed, high, low)), climb)
@@ -391,10 +416,10 @@ def _sensitivities(n: _Numbers, state: _State, m: Array) -> tuple[Array, Array, 
     holds = n.hold.shape[1]
     if holds == 0:
         return np.zeros((count, forms)), np.zeros((count, 0)), np.zeros((count, bases))
-    j = _jacobian(n, m, state.ionic)
+    j, row, column = _scaled_jacobian(n, state, m, _balance(n, m, state.s)[1])
     unit = np.zeros(j.shape[:2])
-    unit[:, bases] = 1.0
-    adjoint = _solve(np.swapaxes(j, 1, 2), unit)
+    unit[:, bases] = column[:, bases]
+    adjoint = row * _solve(np.swapaxes(j, 1, 2), unit)
     # d(equations)/d ln K_i = m_i times (ν_i, 0, z²/2, 1); of a hold: -1 in its own row
     pull = (
         np.einsum("pfb,pb->pf", n.nu, adjoint[:, :bases])

@@ -20,8 +20,8 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, fields
-from typing import Any
+from dataclasses import dataclass, fields, replace
+from typing import Any, TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
@@ -100,12 +100,36 @@ _SCALARS = ("t_celsius", "model", "limit")
 
 def single(problem: Mapping[str, Any]) -> Problem:
     """A stack of one from the JSON form. Raises KeyError or ValueError on a malformed mapping."""
-    return Problem(**{f.name: np.asarray([problem[f.name]], dtype=float) for f in fields(Problem)})
+    arrays = {f.name: np.asarray([problem[f.name]], dtype=float) for f in fields(Problem)}
+    if arrays["hold"].size == 0:  # no hold: JSON's [] does not say how wide its rows would be
+        bases = arrays["total"].shape[1]
+        arrays |= {
+            "hold": np.zeros((1, 0, bases)),
+            "hold_law": np.zeros((1, 0, 7)),
+            "exchange": np.zeros((1, 0, bases)),
+        }
+    return Problem(**arrays)
 
 
 def as_json(problem: Problem, index: int = 0) -> dict[str, Any]:
     """One problem of a stack in the JSON form."""
     return {f.name: getattr(problem, f.name)[index].tolist() for f in fields(Problem)}
+
+
+Stack = TypeVar("Stack", Problem, Solution)
+
+
+def one(stacked: Stack, index: int) -> Stack:
+    """One problem or solution of a stack, as a stack of one."""
+    rows = {f.name: getattr(stacked, f.name)[index : index + 1] for f in fields(stacked)}
+    return replace(stacked, **rows)
+
+
+def at_temperatures(problem: Problem, temperatures: Sequence[float]) -> Problem:
+    """One problem (a stack of one) at several temperatures in °C."""
+    count = len(temperatures)
+    rows = {f.name: np.repeat(getattr(problem, f.name), count, axis=0) for f in fields(Problem)}
+    return Problem(**{**rows, "t_celsius": np.asarray(temperatures, dtype=float)})
 
 
 def stack(problems: Sequence[Problem]) -> Problem:

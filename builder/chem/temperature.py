@@ -143,7 +143,7 @@ def recentred(law: Sequence[float], t0_kelvin: float = 298.15) -> tuple[float, .
 
 
 def combined(parts: Sequence[tuple[float, Sequence[float]]]) -> tuple[float, ...]:
-    """Σ coefficient · law, every law recentred on 298.15 K and rounded to ten digits once summed."""
+    """Σ coefficient · law, every law recentred on 298.15 K and rounded to ten digits."""
     rows = [(n, recentred(law)) for n, law in parts]
     sums = (math.fsum(n * row[i] for n, row in rows) for i in range(1, LAW_LENGTH))
     return (298.15, *(ten_digits(x) for x in sums))

@@ -34,10 +34,10 @@ class AmountError(ValueError):
 
 def molality(text: str, molar_mass: float) -> float:
     """mol per kg of water of `text`; molar_mass in g/mol. Raises AmountError."""
+    if "," in text:
+        raise AmountError(f"{text!r} has a comma; write the decimals with a point, as in 0.05")
     match = _NUMBER.fullmatch(text)
     if match is None:
-        if "," in text:
-            raise AmountError(f"{text!r} has a comma; write the decimals with a point, as in 0.05")
         raise AmountError(f"{text!r} is no amount; write a number and a unit, as in 0.05mol/kg")
     number, unit = float(match[1]), match[2]
     if unit not in UNITS:

@@ -4,17 +4,24 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
-import numpy as np
-
-from builder.chem.activity import coefficients, log10_gamma
 from builder.chem.curve import CurveValue, at
 from builder.chem.equilibrium import solve
 from builder.chem.formula import parse_formula
-from builder.chem.problem import BEYOND_LIMIT, COMPUTED, DAVIES, MODEL_NAMES, Problem, Solution
+from builder.chem.problem import (
+    BEYOND_LIMIT,
+    COMPUTED,
+    MODEL_NAMES,
+    Problem,
+    Solution,
+    at_temperatures,
+    one,
+)
 from builder.chem.temperature import LN10
 from builder.chem.water import density_kg_m3
+from builder.collection.answer import Dissolved, FormAmount, OtherSolid
+from builder.collection.budget import budget
 from builder.collection.forms import HYDROGEN, Made, add
 from builder.collection.mixture import (
     Mixture,
@@ -25,61 +32,6 @@ from builder.collection.mixture import (
     textbook,
 )
 from builder.collection.reference import Reference
-
-
-@dataclass(frozen=True)
-class FormAmount:
-    """One dissolved form. share: of all dissolved metal of the salt; None for a form without it."""
-
-    form: str
-    share: float | None
-    mol_per_kg: float
-    activity_coefficient: float
-
-
-@dataclass(frozen=True)
-class BudgetLine:
-    """Part of the variance of log10 of the solubility that one constant carries."""
-
-    constant: str
-    sensitivity: float
-    u: float
-    share: float  # of the variance
-
-
-@dataclass(frozen=True)
-class OtherSolid:
-    """Another solid of the collection the answer is supersaturated with."""
-
-    salt: str
-    saturation_index: float
-
-
-@dataclass(frozen=True)
-class Dissolved:
-    """Answer of `dissolve`. Where state is refused every number is None and reason says why."""
-
-    salt: str
-    temperature_c: float
-    state: str
-    reason: str
-    constant: CurveValue
-    solubility_mol_per_kg: float | None = None
-    solubility_mol_per_l: float | None = None
-    solubility_g_per_l: float | None = None
-    solubility_g_per_l_anhydrous: float | None = None
-    metal: str = ""
-    metal_mg_per_kg: float | None = None
-    metal_mg_per_l: float | None = None
-    forms: tuple[FormAmount, ...] = ()
-    ionic_strength: float | None = None
-    activity_model: str = ""
-    ph: float | None = None
-    standard_uncertainty_log10: float | None = None
-    budget: tuple[BudgetLine, ...] = ()
-    textbook_mol_per_kg: float | None = None
-    other_solids: tuple[OtherSolid, ...] = ()
-
 
 Additions = Sequence[tuple[str, float]]  # (formula of an electrolyte, mol/kg)
 
@@ -92,34 +44,66 @@ def dissolve(
     Never raises for a known salt, known electrolytes and any temperature: what can not be
     answered is refused in words.
     """
+    return dissolve_series(reference, salt_id, (t_celsius,), additions)[0]
+
+
+def dissolve_series(
+    reference: Reference, salt_id: str, temperatures: Sequence[float], additions: Additions = ()
+) -> list[Dissolved]:
+    """The same question at several temperatures, solved as one stack."""
     evaluated = reference.salts[salt_id]
-    if evaluated.law.curve is None:
-        nothing = CurveValue(t_celsius, "refused", 0.0, None, None, 1.96, evaluated.refused)
-        return Dissolved(salt_id, t_celsius, "refused", evaluated.refused, nothing)
-    value = at(evaluated.law.curve, t_celsius)
-    if value.log10_k is None:
-        return Dissolved(salt_id, t_celsius, "refused", value.reason, value)
+    curve = evaluated.law.curve
+    if curve is None:
+        reason = evaluated.refused
+        blank = CurveValue(25.0, "refused", 0.0, None, None, 1.96, reason)
+        return [_refused(salt_id, replace(blank, t_celsius=t), reason) for t in temperatures]
+    values = [at(curve, t) for t in temperatures]
+    given = [(m, reference.additions[formula]) for formula, m in additions if m > 0.0]
     solid = reference.dissolving[salt_id]
-    given = [(reference.additions[formula], m) for formula, m in additions if m > 0.0]
     try:
-        mix = mixture(
-            reference.forms, reference.collection, solid, [g for g, _ in given],
-            evaluated.salt.needs,
-        )  # fmt: skip
+        made = [part for _, part in given]
+        mix = mixture(reference.forms, reference.collection, solid, made, evaluated.salt.needs)
     except NotKnownError as unknown:
-        return Dissolved(salt_id, t_celsius, "refused", str(unknown), value)
-    totals = add([(m, made) for made, m in given], {}).base
-    asked = salt_problem(reference, salt_id, mix, t_celsius, totals)
+        return [_refused(salt_id, v, str(unknown)) for v in values]
+    open_values = [v for v in values if v.log10_k is not None]
+    totals = add(given, {}).base
+    answers = iter(_solved(reference, salt_id, open_values, mix, totals))
+    return [_refused(salt_id, v, v.reason) if v.log10_k is None else next(answers) for v in values]
+
+
+def _refused(salt_id: str, value: CurveValue, reason: str) -> Dissolved:
+    # a constant that is itself refused says why; it is the first reason
+    return Dissolved(salt_id, value.t_celsius, "refused", value.reason or reason, value)
+
+
+def _solved(
+    reference: Reference,
+    salt_id: str,
+    values: Sequence[CurveValue],
+    mix: Mixture,
+    totals: Mapping[str, float],
+) -> list[Dissolved]:
+    if not values:
+        return []
+    temperatures = [v.t_celsius for v in values]
+    asked = at_temperatures(salt_problem(reference, salt_id, mix, 25.0, totals), temperatures)
     answer = solve(asked)
-    simple = textbook_amount(reference, salt_id, mix, t_celsius, totals)
-    if answer.state[0] != COMPUTED:
+    book = salt_problem(reference, salt_id, textbook(mix), 25.0, totals)
+    simple = solve(at_temperatures(book, temperatures))
+    out: list[Dissolved] = []
+    for i, value in enumerate(values):
+        amount = float(simple.amount[i, 0]) if simple.state[i] == COMPUTED else None
+        if answer.state[i] == COMPUTED:
+            rows = (one(asked, i), one(answer, i))
+            out.append(_answer(reference, salt_id, value, mix, *rows, amount))
+            continue
         reason = (
             f"the ionic strength would pass {mix.limit:g} mol/kg, where the activity model ends"
-            if answer.state[0] == BEYOND_LIMIT
+            if answer.state[i] == BEYOND_LIMIT
             else "the engine found no solution"
         )
-        return Dissolved(salt_id, t_celsius, "refused", reason, value, textbook_mol_per_kg=simple)
-    return _answer(reference, salt_id, value, mix, asked, answer, simple)
+        out.append(replace(_refused(salt_id, value, reason), textbook_mol_per_kg=amount))
+    return out
 
 
 def salt_problem(
@@ -135,18 +119,6 @@ def salt_problem(
     solid = reference.dissolving[salt_id]
     side_laws = {name: c.law for name, c in reference.side_curves.items()}
     return problem(mix, t_celsius, totals, [(solid, hold_law(curve.law, solid, side_laws))])
-
-
-def textbook_amount(
-    reference: Reference,
-    salt_id: str,
-    mix: Mixture,
-    t_celsius: float,
-    totals: Mapping[str, float],
-) -> float | None:
-    """mol/kg from free ions and concentrations alone, for comparison; None without a solution."""
-    answer = solve(salt_problem(reference, salt_id, textbook(mix), t_celsius, totals))
-    return float(answer.amount[0, 0]) if answer.state[0] == COMPUTED else None
 
 
 def metal_of(reference: Reference, salt_id: str) -> str:
@@ -185,7 +157,7 @@ def _answer(
         for i, (f, n, m) in enumerate(zip(mix.forms, times, molality, strict=True))
     )
     metal_mass = reference.molar_mass(metal)
-    u, budget = _budget(reference, salt_id, value, mix, asked, answer)
+    u, lines = budget(reference, salt_id, value, mix, asked, answer)
     return Dissolved(
         salt=salt_id,
         temperature_c=t,
@@ -197,6 +169,7 @@ def _answer(
         solubility_g_per_l=s * litre * mass,
         solubility_g_per_l_anhydrous=s * litre * dry,
         metal=metal,
+        metal_mg_per_mol=reference.dissolving[salt_id].base[metal] * metal_mass * 1000.0,
         metal_mg_per_kg=total_metal * metal_mass * 1000.0,
         metal_mg_per_l=total_metal * metal_mass * 1000.0 * litre,
         forms=forms,
@@ -204,61 +177,10 @@ def _answer(
         activity_model=MODEL_NAMES[mix.model],
         ph=-float(answer.ln_activity[0, 0]) / LN10,
         standard_uncertainty_log10=u,
-        budget=budget,
+        budget=lines,
         textbook_mol_per_kg=simple,
         other_solids=_other_solids(reference, salt_id, mix, answer, t),
     )
-
-
-def _budget(
-    reference: Reference,
-    salt_id: str,
-    value: CurveValue,
-    mix: Mixture,
-    asked: Problem,
-    answer: Solution,
-) -> tuple[float | None, tuple[BudgetLine, ...]]:
-    """u(log10 s) from all constants through the Jacobian, plus the spread of the models.
-
-    The model line is the change of log10 s to first order when the coefficients of the other
-    activity model are put in at the same ionic strength, taken as one standard deviation.
-    """
-    by_hold = float(answer.by_hold[0, 0])
-    by_form = [float(x) for x in answer.by_form[0]]
-    powers: dict[str, float] = {}
-    for name, n in reference.dissolving[salt_id].constants.items():
-        powers[name] = powers.get(name, 0.0) - n * by_hold
-    for form, slope in zip(mix.forms, by_form, strict=True):
-        for name, n in form.made.constants.items():
-            powers[name] = powers.get(name, 0.0) + n * slope
-    if value.u is None:
-        return None, ()
-    lines = [("solubility product", by_hold, value.u)]
-    for name, slope in powers.items():
-        side = at(reference.side_curves[name], value.t_celsius)
-        lines.append((name, slope, side.u or 0.0))
-    lines.append(("activity model", 1.0, abs(_model_change(asked, answer, by_form))))
-    variance = math.fsum((slope * u) ** 2 for _, slope, u in lines)
-    budget = [
-        BudgetLine(name, slope, u, (slope * u) ** 2 / variance if variance else 0.0)
-        for name, slope, u in lines
-    ]
-    budget.sort(key=lambda line: (-line.share, line.constant))
-    return math.sqrt(variance), tuple(line for line in budget if line.share > 1e-4)
-
-
-def _model_change(asked: Problem, answer: Solution, by_form: Sequence[float]) -> float:
-    """First-order change of log10 s when the γ of Davies are put in; 0 where they are used."""
-    other = Problem(
-        **{
-            **{name: getattr(asked, name) for name in asked.__dataclass_fields__},
-            "model": np.full_like(asked.model, DAVIES),
-        }
-    )
-    gamma = log10_gamma(*coefficients(other), answer.ionic_strength)[0]
-    change = gamma - answer.log10_gamma[0]
-    # log10 m_i = ... - log10 γ_i: a larger γ acts like a smaller constant
-    return -math.fsum(s * float(d) for s, d in zip(by_form, change, strict=True))
 
 
 def _other_solids(

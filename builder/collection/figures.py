@@ -11,6 +11,7 @@ from builder.chem.reaction import parse_reaction, stoichiometry
 from builder.chem.rounding import fixed, significant
 from builder.chem.temperature import GAS_CONSTANT, LN10
 from builder.chem.water import kelvin
+from builder.collection.parts import JOULES
 from builder.collection.records import (
     Collection,
     Determination,
@@ -88,10 +89,11 @@ def _log10_k(figure: Figure, t: float) -> tuple[float, float | None, float, tupl
     elif figure.quantity == "log10-k":
         value, slope = x, 1.0
         step = Step("log10 K as printed", _plain(x), fixed(value, 4))
-    else:  # gibbs-energy in kJ/mol or J/mol
-        joules = x * (1.0 if figure.unit == "J/mol" else 1e3)
-        factor = (1.0 if figure.unit == "J/mol" else 1e3) / (GAS_CONSTANT * kelvin(t) * LN10)
-        value, slope = -joules / (GAS_CONSTANT * kelvin(t) * LN10), factor
+    else:  # gibbs-energy
+        scale = JOULES[figure.unit or "kJ/mol"]
+        joules = x * scale
+        slope = scale / (GAS_CONSTANT * kelvin(t) * LN10)
+        value = -joules / (GAS_CONSTANT * kelvin(t) * LN10)
         step = Step(
             "log10 K = -ΔG/(R T ln 10)",
             f"-({_plain(joules)} J/mol)/(8.314462618 × {fixed(kelvin(t), 2)} × ln 10)",

@@ -56,10 +56,10 @@ def read_folders(folders: Sequence[Path], shapes: Shapes) -> Files:
     documents: dict[str, list[Document]] = {kind: [] for kind in KINDS}
     findings: list[Finding] = []
     content: dict[str, bytes] = {}
-    for folder in folders:
+    for folder, label in zip(folders, _labels(folders), strict=True):
         if not folder.is_dir():
             raise FolderError(f"{folder} is not a folder; name a folder of constant files")
-        for path, kind, shown in _files(folder):
+        for path, kind, shown in _files(folder, label):
             if kind is None:
                 findings.append(_stray(shown))
                 continue
@@ -83,13 +83,25 @@ def read_folders(folders: Sequence[Path], shapes: Shapes) -> Files:
     return Files({k: tuple(v) for k, v in documents.items()}, tuple(findings), content)
 
 
-def _files(folder: Path) -> Iterable[tuple[Path, str | None, str]]:
+def _labels(folders: Sequence[Path]) -> list[str]:
+    """What files of a folder are shown under: its name, with more of its path where two agree."""
+    parts = [folder.resolve().parts for folder in folders]
+    labels: list[str] = []
+    for own in parts:
+        length = 1
+        while length < len(own) and sum(p[-length:] == own[-length:] for p in parts) > 1:
+            length += 1
+        labels.append("/".join(own[-length:]).lstrip("/"))
+    return labels
+
+
+def _files(folder: Path, label: str) -> Iterable[tuple[Path, str | None, str]]:
     """(path, kind or None, name shown), sorted by name; dot-files and schemas left out."""
     for path in sorted(folder.rglob("*"), key=lambda p: p.relative_to(folder).as_posix()):
         parts = path.relative_to(folder).parts
         if path.is_dir() or parts[0] == "schema" or any(p.startswith(".") for p in parts):
             continue
-        shown = "/".join((folder.name, *parts))
+        shown = "/".join((label, *parts))
         known = len(parts) == 2 and parts[0] in KINDS and path.suffix == ".yaml"
         yield path, parts[0] if known else None, shown
 

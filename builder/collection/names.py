@@ -87,7 +87,7 @@ class Names:
         return [
             id
             for (elements, water), ids in self._by_composition.items()
-            if water and formula.water == 0 and _without_water(elements, water) == bare
+            if water and _without_water(elements, water) == bare
             for id in ids
         ]
 

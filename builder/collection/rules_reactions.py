@@ -123,7 +123,7 @@ def unknown_form(formula: str, place: Place) -> Finding:
 
 def dissolves_solid(reaction: Reaction, solid: str, place: Place) -> Iterator[Finding]:
     """One formula unit of the solid is used up, and stands on the left."""
-    if stoichiometry(reaction).get(solid) != -1 or reaction.left[0] != (1, solid):
+    if stoichiometry(reaction).get(solid) != -1 or reaction.left[0] != (Fraction(1), solid):
         found = f"a reaction that does not dissolve one {solid}"
         yield Finding("error", "chem-solid", place, found, f"begin with {solid} on the left side")
 

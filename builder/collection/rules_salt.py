@@ -109,7 +109,8 @@ def _choice(salt: Salt, collection: Collection) -> Iterator[Finding]:
             yield _missing("chem-choice", place, key, name, known)
             continue
         source = collection.sources.get(known[name].citation.source)
-        if source is not None and source.kind in NEVER_CHOSEN:
+        estimated = known[name].citation.evidence == "estimated"  # says itself what it is
+        if source is not None and source.kind in NEVER_CHOSEN and not estimated:
             found = f"{quoted(name)}, from a source of the kind {source.kind}"
             cure = "choose one that names its own source: such a table shows, it does not decide"
             yield Finding("error", "chem-chosen-kind", place, found, cure)

@@ -12,7 +12,7 @@ from builder.read.findings import Finding, Level, Place, quoted
 
 CODES: Mapping[str, Level] = {
     "chem-source-unknown": "error",
-    "chem-source-unused": "doubt",
+    "chem-source-unused": "error",
     "chem-isbn": "error",
     "chem-doi": "error",
     "judge-source-twice": "doubt",
@@ -62,7 +62,7 @@ def check_sources(
         if source.id not in used:
             place = source.origin.place("id")
             found = f"the source {quoted(source.id)}, which nothing cites"
-            yield Finding("doubt", "chem-source-unused", place, found, "cite it, or remove it")
+            yield Finding("error", "chem-source-unused", place, found, "cite it, or remove it")
         yield from _numbers(source)
         doi = str(source.facts.get("DOI", "")).casefold()
         if doi and first_with.setdefault(doi, source) is not source:

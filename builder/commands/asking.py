@@ -124,6 +124,10 @@ def additions(names: Names, asked: Reference, texts: Sequence[str]) -> Mapping[s
             raise CommandError(
                 f"{quoted(text)} names no amount; write electrolyte=amount, as in Na2SO4=0.05mol/kg"
             )
+        if "," in amount:
+            raise CommandError(
+                f"the amount {quoted(amount)} has a comma; write a point, as in 0.05mol/kg"
+            )
         formula = _electrolyte(names.find(name.strip()), name)
         try:
             added = molality(amount, asked.molar_mass(formula))

@@ -6,7 +6,8 @@ from collections.abc import Mapping
 from dataclasses import asdict, dataclass
 from typing import Any
 
-from builder.collection.dissolve import Dissolved, dissolve, dissolve_textbook
+from builder.collection.answer import Dissolved
+from builder.collection.dissolve import dissolve, dissolve_textbook
 from builder.collection.reference import Reference
 from builder.commands.telling import number
 
@@ -48,23 +49,6 @@ class Answer:
     def textbook_asked(self) -> bool:
         return self.shown is not self.full
 
-    @property
-    def factor(self) -> float | None:
-        """Full answer over textbook answer; None where one is missing or the solid comes out."""
-        full, simple = self.full.solubility_mol_per_kg, self.full.textbook_mol_per_kg
-        if full is None or simple is None or full <= 0.0 or simple <= 0.0:
-            return None
-        return full / simple
-
-    def interval(self) -> tuple[float, float] | None:
-        """95 % interval of the solubility, mol/kg; None where it is not evaluated."""
-        s, u = self.shown.solubility_mol_per_kg, self.shown.standard_uncertainty_log10
-        if s is None or u is None:
-            return None
-        half = self.shown.constant.coverage_factor * u
-        low, high = sorted((s * 10.0**-half, s * 10.0**half))
-        return low, high
-
 
 def answer(
     reference: Reference,
@@ -88,7 +72,7 @@ def record(asked: Answer) -> dict[str, Any]:
     """
     it = asked.shown
     computed = it.state == "computed"
-    low, high = asked.interval() or (None, None)
+    low, high = asked.shown.interval or (None, None)
 
     def rows(items: tuple[Any, ...]) -> list[dict[str, Any]] | None:
         return [_rounded(asdict(item)) for item in items] if computed else None
@@ -115,7 +99,7 @@ def record(asked: Answer) -> dict[str, Any]:
         "metal_mg_per_l": number(it.metal_mg_per_l),
         "budget": rows(it.budget),
         "other_solids": rows(it.other_solids),
-        "textbook_factor": number(asked.factor),
+        "textbook_factor": number(asked.full.factor),
     }
 
 

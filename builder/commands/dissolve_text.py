@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from builder.chem.formula import to_unicode
-from builder.collection.dissolve import Dissolved
+from builder.collection.answer import Dissolved
 from builder.collection.reference import Reference
 from builder.commands.dissolve import Answer
 from builder.commands.telling import (
@@ -33,7 +33,7 @@ def text(reference: Reference, asked: Answer) -> str:
         refused = ("refused", typographic(it.reason))
         parts.append(aligned([refused, *_cautions(reference, it)]))
         return "\n".join(parts)
-    parts.append(aligned(_amounts(reference, asked)))
+    parts.append(aligned(_amounts(asked)))
     parts.append(_forms(it))
     parts.append(aligned([*_grounds(reference, it), *_cautions(reference, it)]))
     return "\n".join(parts)
@@ -51,13 +51,13 @@ def _title(reference: Reference, asked: Answer) -> str:
     return title
 
 
-def _amounts(reference: Reference, asked: Answer) -> Lines:
+def _amounts(asked: Answer) -> Lines:
     it = asked.shown
     s, litre, metal_l = it.solubility_mol_per_kg, it.solubility_g_per_l, it.metal_mg_per_l
     dry = it.solubility_g_per_l_anhydrous
     assert s is not None and litre is not None and dry is not None and metal_l is not None
     comes_out = s < 0.0
-    interval = None if comes_out else asked.interval()
+    interval = None if comes_out else it.interval
     lines: Lines = []
     if comes_out:
         lines.append(("dissolves", "nothing: the solution as made up is oversaturated"))
@@ -70,7 +70,7 @@ def _amounts(reference: Reference, asked: Answer) -> Lines:
             grams += f", counted without water of crystallisation {digits(dry)} g/L"
         lines.append(("", grams))
     metal = f"{digits(metal_l)} mg/L"
-    if (span := _metal_interval(reference, asked)) is not None:
+    if (span := it.metal_interval) is not None:
         metal += f", {between(*span)}"
     lines += [
         (f"dissolved {to_unicode(it.metal)}", metal),
@@ -85,20 +85,6 @@ def _amounts(reference: Reference, asked: Answer) -> Lines:
     return lines
 
 
-def _metal_interval(reference: Reference, asked: Answer) -> tuple[float, float] | None:
-    """95 % interval of the metal in mg/L: what was added is exact, what dissolves is not."""
-    it = asked.shown
-    interval = asked.interval()
-    if interval is None or it.solubility_mol_per_l is None or it.metal_mg_per_l is None:
-        return None
-    assert it.solubility_mol_per_kg is not None  # as the amount per litre is there
-    times = reference.dissolving[it.salt].base[it.metal]
-    milligrams = 1000.0 * reference.molar_mass(it.metal) * times
-    litre = it.solubility_mol_per_l / it.solubility_mol_per_kg
-    shift = [(bound - it.solubility_mol_per_kg) * milligrams * litre for bound in interval]
-    return max(it.metal_mg_per_l + shift[0], 0.0), it.metal_mg_per_l + shift[1]
-
-
 def _textbook(asked: Answer) -> Lines:
     """The other of the two answers, and the factor between them."""
     if asked.textbook_asked:
@@ -109,8 +95,8 @@ def _textbook(asked: Answer) -> Lines:
     if other is None:
         return [(label, f"refused: {typographic(asked.full.reason)}")]
     told = f"{digits(abs(other))} mol/kg{' comes out' if other < 0.0 else ''}{tail}"
-    if asked.factor is not None:
-        told += f"; the full answer is {digits(asked.factor)} times the textbook's"
+    if asked.full.factor is not None:
+        told += f"; the full answer is {digits(asked.full.factor)} times the textbook's"
     return [(label, told)]
 
 

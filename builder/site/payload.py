@@ -83,7 +83,8 @@ def sheet_payload(reference: Reference, salt_id: str) -> dict[str, Any]:
     evaluated = reference.salts[salt_id]
     salt = evaluated.salt
     solid = reference.dissolving[salt_id]
-    if evaluated.law.curve is None:
+    curve = evaluated.law.curve
+    if curve is None:
         return {"salt": salt_id, "refused": evaluated.refused}
     side_laws = {name: c.law for name, c in reference.side_curves.items()}
     ions = {HYDROGEN, *solid.base}
@@ -102,12 +103,12 @@ def sheet_payload(reference: Reference, salt_id: str) -> dict[str, Any]:
         "metal": metal,
         "metal_molar_mass": ten_digits(reference.molar_mass(metal)),
         "missing": [f for f in salt.needs if f not in reference.forms],
-        "curve": curve_json(evaluated.law.curve),
-        "solid": {**_made(solid), "law": _short(hold_law(evaluated.law.curve.law, solid, side_laws))},
+        "curve": curve_json(curve),
+        "solid": {**_made(solid), "law": _short(hold_law(curve.law, solid, side_laws))},
         "forms": [_form(f) for f in forms],
         "side": {
-            name: side_json(curve)
-            for name, curve in reference.side_curves.items()
+            name: side_json(side)
+            for name, side in reference.side_curves.items()
             if name in used
         },
         "electrolytes": [

@@ -11,10 +11,11 @@ from builder.chem.curve import Curve, at
 from builder.chem.rounding import display, fixed, significant
 from builder.chem.temperature import basis
 from builder.chem.water import kelvin
-from builder.collection.dissolve import Dissolved, dissolve, metal_of
+from builder.collection.answer import Dissolved
+from builder.collection.dissolve import dissolve, dissolve_series, metal_of
 from builder.collection.figures import Reported
 from builder.collection.identity import digest, figure_digest, record_digest
-from builder.collection.laws import plain_van_t_hoff
+from builder.collection.laws import LawCurve, plain_van_t_hoff
 from builder.collection.records import SideReaction
 from builder.collection.reference import Reference
 from builder.collection.shown import Shown, Step
@@ -94,10 +95,8 @@ def sheet_context(reference: Reference, salt_id: str) -> dict[str, Any]:
         "reported": rows,
         "outlying": [r for r in rows if r["far"]],
         "law": evaluated.law,
-        "laws": [
-            {"curve": c, "kind": LAW_WORDS[c.law.kind], "evidence": _evidence(c.law.citation.evidence),
-             "at_25": constant_text(at(c.curve, 25.0)) if c.curve else None}
-            for c in evaluated.laws.values()
+        "other_laws": [
+            _law_row(c) for name, c in evaluated.laws.items() if name != salt.choice.law
         ],
         "working": displayed_constant(reference, salt_id, 25.0),
         "plain": _plain(evaluated.law.curve),
@@ -118,8 +117,20 @@ LAW_WORDS = {
 }
 
 
-def _evidence(evidence: str) -> str:
-    return EVIDENCE_WORDS[evidence]
+def _law_row(law: LawCurve) -> dict[str, str]:
+    """A law that was not chosen, with what it would give."""
+    at_25 = at_60 = "none"
+    if law.curve is not None:
+        at_25, at_60 = (constant_text(at(law.curve, t)).log10_k or "refused" for t in (25.0, 60.0))
+    return {
+        "id": law.law.id,
+        "kind": LAW_WORDS[law.law.kind],
+        "source": law.law.citation.source,
+        "evidence": law.law.citation.evidence,
+        "at_25": at_25,
+        "at_60": at_60,
+        "note": law.law.note or law.reason,
+    }
 
 
 def _percent(share: float) -> str:
@@ -129,8 +140,9 @@ def _percent(share: float) -> str:
 def _table(reference: Reference, salt_id: str) -> list[TableRow]:
     temperatures = sorted({*(5.0 * i for i in range(21)), *HOUSE_TEMPERATURES})
     rows: list[TableRow] = []
-    for t in temperatures:
-        answer = dissolve(reference, salt_id, t)
+    for t, answer in zip(
+        temperatures, dissolve_series(reference, salt_id, temperatures), strict=True
+    ):
         amount = amount_text(answer)
         rows.append(
             TableRow(

@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 
-from builder.collection.records import Citation, Collection, Source
+from builder.collection.records import Citation as Cited
+from builder.collection.records import Collection, Source
 from builder.collection.reference import Reference
 from builder.site.frame import Frame, salt_address, words_of_count
 from builder.site.render import Renderer
@@ -28,8 +29,11 @@ KIND_WORDS = {
 
 
 @dataclass(frozen=True)
-class Entry:
-    """A source taken apart for printing, in the order of ISO 690; empty texts where not known."""
+class Citation:
+    """A source taken apart for printing, in the order of ISO 690; empty texts where not known.
+
+    authors: without the full stop that follows them.
+    """
 
     id: str
     authors: str
@@ -71,7 +75,7 @@ def pages(reference: Reference, frame: Frame, renderer: Renderer) -> dict[str, b
     return {ADDRESS: renderer.page("sources.html", context)}
 
 
-def citation(source: Source) -> Entry:
+def citation(source: Source) -> Citation:
     """The printed parts of a source."""
     facts = source.facts
 
@@ -87,9 +91,9 @@ def citation(source: Source) -> Entry:
     if "-" not in text("page"):
         numbers = [n.replace("pp. ", "p. ") for n in numbers]
     issued = facts.get("issued")
-    return Entry(
+    return Citation(
         id=source.id,
-        authors=authors(facts.get("author")),
+        authors=authors(facts.get("author")).removesuffix("."),
         title="" if source.title == "unknown" else source.title,
         title_is_part=facts.get("type") in PARTS,
         edition=text("edition"),
@@ -145,6 +149,6 @@ def uses(collection: Collection) -> dict[str, Uses]:
     return found
 
 
-def _named(citations: Iterable[Citation]) -> list[str]:
+def _named(citations: Iterable[Cited]) -> list[str]:
     """The sources of citations and those they came through, each once."""
     return sorted({s for c in citations for s in (c.source, c.via) if s is not None})

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from builder.chem.curve import CurveValue
 from builder.chem.rounding import display, fixed, significant, with_uncertainty
-from builder.collection.dissolve import Dissolved
+from builder.collection.answer import Dissolved
 
 STATE_WORDS = {"within-range": "within the range of the law", "refused": "refused"}
 
@@ -72,19 +72,13 @@ def amount_text(answer: Dissolved) -> AmountText:
     """Texts of a computed answer; empty ones where it is refused."""
     if answer.solubility_mol_per_kg is None or answer.metal_mg_per_l is None:
         return AmountText("", "", "", "", "", "")
-    low = high = ""
-    if answer.standard_uncertainty_log10 is not None:
-        half = 1.96 * answer.standard_uncertainty_log10
-        low = shown(answer.metal_mg_per_l * 10.0**-half)
-        high = shown(answer.metal_mg_per_l * 10.0**half)
-    factor = ""
-    if answer.textbook_mol_per_kg:
-        factor = shown(answer.solubility_mol_per_kg / answer.textbook_mol_per_kg)
+    span = answer.metal_interval
+    low, high = (shown(span[0]), shown(span[1])) if span else ("", "")
     return AmountText(
-        shown(answer.solubility_mol_per_kg),
+        shown(abs(answer.solubility_mol_per_kg)),
         shown(answer.metal_mg_per_l),
-        shown(answer.solubility_g_per_l or 0.0),
+        shown(abs(answer.solubility_g_per_l or 0.0)),
         low,
         high,
-        factor,
+        "" if answer.factor is None else shown(answer.factor),
     )

@@ -29,7 +29,8 @@ from dataclasses import dataclass
 
 import pytest
 
-from builder.collection.dissolve import Dissolved, dissolve
+from builder.collection.answer import Dissolved
+from builder.collection.dissolve import dissolve
 from builder.collection.reference import Reference
 
 ANHYDROUS = 136.14  # g/mol of CaSO4

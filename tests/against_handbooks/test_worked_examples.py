@@ -59,12 +59,12 @@ def ion_product(reference: Reference, salt: str, ions: Mapping[str, float]) -> f
     mix = textbook(mixture(reference.forms, reference.collection, solid, []))
     totals = add([(m, reference.forms[ion].made) for ion, m in ions.items()], {}).base
     answer = _solve(reference, mix, totals, None)
-    log_q = math.fsum(n * float(answer.ln_activity[0, mix.bases.index(b)]) for b, n in
-                      solid.base.items())  # fmt: skip
+    ln_activity = dict(zip(mix.bases, answer.ln_activity[0].tolist(), strict=True))
+    log_q = math.fsum(n * ln_activity[ion] for ion, n in solid.base.items())
     constants = combined(
         [(n, reference.side_curves[name].law) for name, n in solid.constants.items()]
     )
-    return math.exp(log_q) * 10.0 ** constants[1]
+    return math.exp(log_q) * math.pow(10.0, constants[1])
 
 
 def _solve(

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 
 import pytest
 from running import Ran, here, one_line
@@ -130,7 +131,7 @@ def test_a_solution_oversaturated_as_made_up_gives_its_solid_back() -> None:
 
 
 def test_text_for_people() -> None:
-    out = dissolve(*BATH).out
+    out = re.sub(r"\n {8,}", " ", dissolve(*BATH).out)  # lines unfolded
     for words in (
         "at 37 °C in 0.0500 mol/kg Na₂SO₄",
         "mg/L, 95 % between",
@@ -155,7 +156,7 @@ def test_other_solids_are_named() -> None:
         ("Na2SO4", "write electrolyte=amount"),
         ("Na2SO4=", "write a number and a unit"),
         ("Na2SO4=0.05", "has no unit"),
-        ("Na2SO4=0,05mol/kg", "write the decimals with a point"),
+        ("Na2SO4=0,05mol/kg", "write a point"),
         ("Na2SO4=5 spoons", "has the unit"),
         ("Na2SO4=50mol/kg", "more than water can hold"),
         ("Na2SO4=-1mol/kg", "no amount"),

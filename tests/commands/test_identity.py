@@ -9,7 +9,7 @@ from dataclasses import replace
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
-from running import ROOT
+from running import shipped_inspection
 
 from builder.collection.identity import (
     ALPHABET,
@@ -20,7 +20,6 @@ from builder.collection.identity import (
     figure_digest,
     record_digest,
 )
-from builder.collection.inspection import inspect
 from builder.collection.records import Collection
 from builder.read.document import Document, Literal, read_document
 
@@ -118,7 +117,7 @@ def test_what_is_no_digest_does_not_check(text: str) -> None:
 
 @pytest.fixture(scope="module")
 def collection() -> Collection:
-    return inspect([ROOT / "constants"]).collection
+    return shipped_inspection().collection
 
 
 def _edited(collection: Collection, old: str, new: str) -> Document:

@@ -5,9 +5,8 @@ from __future__ import annotations
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
-from running import ROOT
+from running import shipped_inspection
 
-from builder.collection.inspection import inspect
 from builder.collection.names import Match, Named, Names, electrolyte_names, salt_names
 
 INVENTED = Names(
@@ -25,7 +24,7 @@ WITH_ANHYDRITE = Names([Named("gypsum", "CaSO4·2H2O", ()), Named("anhydrite", "
 
 @pytest.fixture(scope="module")
 def salts() -> Names:
-    return salt_names(inspect([ROOT / "constants"]).collection)
+    return salt_names(shipped_inspection().collection)
 
 
 @pytest.mark.parametrize(
@@ -91,7 +90,7 @@ def test_find_never_raises(text: str) -> None:
 
 
 def test_electrolytes_by_formula_and_name() -> None:
-    names = electrolyte_names(inspect([ROOT / "constants"]).collection)
+    names = electrolyte_names(shipped_inspection().collection)
     for text in ("Na2SO4", "na2so4", "Na₂SO₄", "sodium sulphate", "Sodium sulfate"):
         assert names.find(text) == Match("Na2SO4")
     assert names.find("(NH4)2SO4") == Match("(NH4)2SO4")

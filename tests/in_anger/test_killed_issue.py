@@ -15,7 +15,7 @@ from builder.site.writer import recover
 MOMENTS = (0.1, 0.3, 0.5, 0.7, 0.85, 0.92, 0.96, 0.99)  # of the time a whole run takes
 
 
-def issue(repository: Path, out: Path, *, on: str) -> list[str]:
+def issue(out: Path, *, on: str) -> list[str]:
     return [sys.executable, "-m", "builder", "issue", "--out", str(out), "--on", on]
 
 
@@ -25,19 +25,23 @@ def whole(site: Path) -> str:
         ["sha256sum", "--quiet", "-c", "MANIFEST.sha256"], cwd=site, capture_output=True, text=True
     )
     assert done.returncode == 0, done.stdout
-    listed = {line.split("  ", 1)[1] for line in (site / "MANIFEST.sha256").read_text().splitlines()}
+    listed = {
+        line.split("  ", 1)[1] for line in (site / "MANIFEST.sha256").read_text().splitlines()
+    }
     there = {p.relative_to(site).as_posix() for p in site.rglob("*") if p.is_file()}
     assert there == listed | {"MANIFEST.sha256"}
     return (site / "MANIFEST.sha256").read_text()
 
 
 @pytest.fixture(scope="module")
-def sites(tmp_path_factory: pytest.TempPathFactory, repository: Path) -> tuple[Path, str, str, float]:
+def sites(
+    tmp_path_factory: pytest.TempPathFactory, repository: Path
+) -> tuple[Path, str, str, float]:
     """(folder of the old site, old manifest, new manifest, seconds a run takes)."""
     base = tmp_path_factory.mktemp("killed")
-    subprocess.run(issue(repository, base / "old", on="2026-01-01"), cwd=repository, check=True)
+    subprocess.run(issue(base / "old", on="2026-01-01"), cwd=repository, check=True)
     start = time.monotonic()
-    subprocess.run(issue(repository, base / "new", on="2026-02-02"), cwd=repository, check=True)
+    subprocess.run(issue(base / "new", on="2026-02-02"), cwd=repository, check=True)
     seconds = time.monotonic() - start
     return base / "old", whole(base / "old"), whole(base / "new"), seconds
 
@@ -50,7 +54,7 @@ def test_killed(
     site = tmp_path / "site"
     shutil.copytree(old, site)
     run = subprocess.Popen(
-        issue(repository, site, on="2026-02-02"), cwd=repository,
+        issue(site, on="2026-02-02"), cwd=repository,
         stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL,
     )  # fmt: skip
     time.sleep(share * seconds)

@@ -28,6 +28,7 @@ QUESTIONS = [
     ("thallium-chloride", 37.0, "KCl", "0.05 mol/kg"),
     ("brucite", 25.0, "NaOH", "0.01 mol/kg"),
     ("silver-chromate", 25.0, "AgNO3", "0.001 mol/kg"),
+    ("silver-chloride", 25.0, "AgNO3", "0.01 mol/kg"),
 ]
 
 
@@ -125,7 +126,9 @@ def test_a_solution_supersaturated_with_another_solid_says_so(page: Page, site: 
     assert "supersaturated with calcium sulfate dihydrate" in page.inner_text("#also")
 
 
-@pytest.mark.parametrize("address", ["#t=37&colour=red", "#t=hot", "#t=37&with=Unobtainium:1mol/kg"])
+@pytest.mark.parametrize(
+    "address", ["#t=37&colour=red", "#t=hot", "#t=37&with=Unobtainium:1mol/kg"]
+)
 def test_unknown_parts_of_the_address_are_refused_in_words(
     address: str, page: Page, site: Path
 ) -> None:

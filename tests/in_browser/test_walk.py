@@ -10,9 +10,7 @@ from playwright.sync_api import Page
 
 
 @pytest.fixture(params=["file", "http"])
-def start(
-    request: pytest.FixtureRequest, site: Path, local_server: Callable[[Path], str]
-) -> str:
+def start(request: pytest.FixtureRequest, site: Path, local_server: Callable[[Path], str]) -> str:
     """Address of the first page's folder, once as files and once from a web server."""
     return f"file://{site}" if request.param == "file" else local_server(site)
 
@@ -143,14 +141,12 @@ def test_one_slip_is_asked_about_and_never_opened_by_enter(
     page.press("#query", "Enter")
     assert page.url.endswith("index.html")
     page.click("#answers a >> nth=0")
-    assert page.url.endswith(f"salts/{found_first(salt)}")
+    page.wait_for_url(f"{files(site)}/salts/{salt}")
 
 
-def found_first(salt: str) -> str:
-    return salt
-
-
-@pytest.mark.parametrize("query", ["PbSO5", "PbF3", "PbSOO", "AgCrO", "leed", "gyyypsum", "Xx", "37"])
+@pytest.mark.parametrize(
+    "query", ["PbSO5", "PbF3", "PbSOO", "AgCrO", "leed", "gyyypsum", "Xx", "37"]
+)
 def test_formulae_short_words_and_two_slips_are_not_guessed(
     query: str, page: Page, site: Path
 ) -> None:
@@ -180,7 +176,7 @@ def test_arrows_walk_through_the_answers_and_enter_opens_one(page: Page, site: P
 
 
 @pytest.mark.parametrize(
-    "query", ["<img src=x onerror=alert(1)>", "((((", "\\", "[a-", "a" * 5000, "\u0000", "🧂", "·"]
+    "query", ["<img src=x onerror=alert(1)>", "((((", "\\", "[-", "a" * 5000, "\u0000", "🧂", "·"]
 )
 def test_odd_queries_do_no_harm(query: str, page: Page, site: Path) -> None:
     typed(page, files(site), query)

@@ -237,6 +237,20 @@ def test_a_broken_file_is_not_blamed_on_others(tmp_path: Path, shapes: Shapes) -
     assert {f.place.file for f in findings} == {f"small/{SOURCES}"}
 
 
+def test_polymorphs_share_a_formula_but_no_name(tmp_path: Path, shapes: Shapes) -> None:
+    other = (
+        SMALL[GYPSUM]
+        .replace("id: gypsum", "id: gypsum-two")
+        .replace("mineral: none", "mineral: powder")
+    )
+    files = {**SMALL, "salts/gypsum-two.yaml": other}
+    shared = inspected(write(tmp_path / "small", files), shapes).findings
+    assert [(f.code, f.place.line) for f in shared] == [("chem-alias-collision", 4)]
+    named = other.replace("dihydrate", "dihydrate, second form")
+    files = {**SMALL, "salts/gypsum-two.yaml": named}
+    assert inspected(write(tmp_path / "small", files), shapes).findings == ()
+
+
 def test_one_salt_alone_finds_what_all_together_find(shapes: Shapes) -> None:
     sound = inspect([FOLDER]).collection
     for case in CASES:

@@ -164,10 +164,8 @@ def _side_reactions(
         if y > 1 and (kind == "gas" or rng.random() < 0.7):
             second = 6.35 if kind == "gas" else pk - rng.uniform(2.0, 6.0)
             draft.form({anion: 1, PROTON: 2}, pk + second)
-    if kind == "amphoteric":
-        steps = max(4, z + 1) if z > 1 else 2
-    else:
-        steps = rng.choice((0, 1, 1, 2))
+    hydroxides = 4 if z > 1 else 2
+    steps = hydroxides if kind == "amphoteric" else rng.choice((0, 1, 1, 2))
     log10_beta = 0.0
     for n in range(1, steps + 1):
         log10_beta -= rng.uniform(5.0, 10.5) + (1.5 * n if z == 1 else 0.0)
@@ -176,7 +174,9 @@ def _side_reactions(
         draft.form({cation: 1, chloride: 1}, rng.uniform(-0.5, 2.0))
 
 
-def _additions(draft: Draft, kind: str, cation: int, anion: int, sodium: int, chloride: int) -> None:
+def _additions(
+    draft: Draft, kind: str, cation: int, anion: int, sodium: int, chloride: int
+) -> None:
     rng = draft.rng
     draft.add(sodium, chloride, 10 ** rng.uniform(-5.0, -0.4))
     if kind == "common ion":

@@ -1,0 +1,40 @@
+"""What README.md shows works as printed."""
+
+from __future__ import annotations
+
+import re
+import subprocess
+import sys
+from pathlib import Path
+
+
+def run(*words: str, cwd: Path) -> subprocess.CompletedProcess[str]:
+    return subprocess.run(
+        [sys.executable, "-m", "builder", *words], cwd=cwd, capture_output=True, text=True
+    )
+
+
+def test_the_example_of_a_new_salt_is_accepted_and_answered(
+    repository: Path, tmp_path: Path
+) -> None:
+    readme = (repository / "README.md").read_text(encoding="utf-8")
+    (example,) = re.findall(r"```yaml\n(id: .*?)```", readme, re.S)
+    name = re.match(r"id: (.*)", example)
+    assert name is not None
+    salts = tmp_path / "our_constants" / "salts"
+    salts.mkdir(parents=True)
+    (salts / f"{name[1]}.yaml").write_text(example, encoding="utf-8")
+    done = run("value", name[1], "--at", "25", "--constants", str(salts.parent), cwd=repository)
+    assert done.returncode == 0, done.stderr
+    assert "5.18" in done.stdout  # log10 of the 6.60E-6 printed in the example, by hand -5.180
+
+
+def test_every_command_of_the_tour_runs(repository: Path, tmp_path: Path) -> None:
+    readme = (repository / "README.md").read_text(encoding="utf-8")
+    lines = re.findall(r"^    sparingly (.+?)(?:  +#.*)?$", readme, re.M)
+    assert len(lines) >= 6
+    (tmp_path / "baths.csv").write_text("salt,at\nPbSO4,37\n", encoding="utf-8")
+    (tmp_path / "our_constants" / "salts").mkdir(parents=True)
+    for line in lines:
+        done = run(*line.split(), cwd=tmp_path)
+        assert done.returncode == 0, line + done.stderr
