@@ -36,6 +36,14 @@ class OtherSolid:
 
 
 @dataclass(frozen=True)
+class Formed:
+    """Another solid that formed, mol per kg of water."""
+
+    salt: str
+    mol_per_kg: float
+
+
+@dataclass(frozen=True)
 class Dissolved:
     """Answer of `dissolve`. Where state is refused the numbers are None and reason says why.
 
@@ -65,6 +73,9 @@ class Dissolved:
     budget: tuple[BudgetLine, ...] = ()
     textbook_mol_per_kg: float | None = None
     other_solids: tuple[OtherSolid, ...] = ()
+    titrant: str = ""
+    titrant_mol_per_kg: float | None = None
+    formed: tuple[Formed, ...] = ()
 
     @property
     def interval(self) -> tuple[float, float] | None:

@@ -196,6 +196,7 @@ def _side(parts: Parts) -> Callable[[Origin, Any], SideReaction | None]:
             law=law,
             law_evidence=item["law"].get("evidence", citation.evidence),
             stands_beside=tuple(item["stands_beside"]),
+            gas_per=item.get("gas_per"),
             note=item.get("note"),
             origin=origin,
         )

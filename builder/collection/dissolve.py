@@ -22,11 +22,11 @@ from builder.chem.temperature import LN10
 from builder.chem.water import density_kg_m3
 from builder.collection.answer import Dissolved, FormAmount, OtherSolid
 from builder.collection.budget import budget
+from builder.collection.conditions import solid_hold
 from builder.collection.forms import HYDROGEN, Made, add
 from builder.collection.mixture import (
     Mixture,
     NotKnownError,
-    hold_law,
     mixture,
     problem,
     textbook,
@@ -56,7 +56,7 @@ def dissolve_series(
     if curve is None:
         reason = evaluated.refused
         blank = CurveValue(25.0, "refused", 0.0, None, None, 1.96, reason)
-        return [_refused(salt_id, replace(blank, t_celsius=t), reason) for t in temperatures]
+        return [refused(salt_id, replace(blank, t_celsius=t), reason) for t in temperatures]
     values = [at(curve, t) for t in temperatures]
     given = [(m, reference.additions[formula]) for formula, m in additions if m > 0.0]
     solid = reference.dissolving[salt_id]
@@ -64,14 +64,15 @@ def dissolve_series(
         made = [part for _, part in given]
         mix = mixture(reference.forms, reference.collection, solid, made, evaluated.salt.needs)
     except NotKnownError as unknown:
-        return [_refused(salt_id, v, str(unknown)) for v in values]
+        return [refused(salt_id, v, str(unknown)) for v in values]
     open_values = [v for v in values if v.log10_k is not None]
     totals = add(given, {}).base
     answers = iter(_solved(reference, salt_id, open_values, mix, totals))
-    return [_refused(salt_id, v, v.reason) if v.log10_k is None else next(answers) for v in values]
+    return [refused(salt_id, v, v.reason) if v.log10_k is None else next(answers) for v in values]
 
 
-def _refused(salt_id: str, value: CurveValue, reason: str) -> Dissolved:
+def refused(salt_id: str, value: CurveValue, reason: str) -> Dissolved:
+    """An answer that is none."""
     # a constant that is itself refused says why; it is the first reason
     return Dissolved(salt_id, value.t_celsius, "refused", value.reason or reason, value)
 
@@ -95,15 +96,22 @@ def _solved(
         amount = float(simple.amount[i, 0]) if simple.state[i] == COMPUTED else None
         if answer.state[i] == COMPUTED:
             rows = (one(asked, i), one(answer, i))
-            out.append(_answer(reference, salt_id, value, mix, *rows, amount))
+            out.append(computed(reference, salt_id, value, mix, *rows, amount))
             continue
-        reason = (
-            f"the ionic strength would pass {mix.limit:g} mol/kg, where the activity model ends"
-            if answer.state[i] == BEYOND_LIMIT
-            else "the engine found no solution"
-        )
-        out.append(replace(_refused(salt_id, value, reason), textbook_mol_per_kg=amount))
+        out.append(unsolved(salt_id, value, mix, int(answer.state[i]), amount))
     return out
+
+
+def unsolved(
+    salt_id: str, value: CurveValue, mix: Mixture, state: int, simple: float | None
+) -> Dissolved:
+    """A refusal of the engine in words."""
+    reason = (
+        f"the ionic strength would pass {mix.limit:g} mol/kg, where the activity model ends"
+        if state == BEYOND_LIMIT
+        else "the engine found no solution"
+    )
+    return replace(refused(salt_id, value, reason), textbook_mol_per_kg=simple)
 
 
 def salt_problem(
@@ -114,11 +122,7 @@ def salt_problem(
     totals: Mapping[str, float],
 ) -> Problem:
     """The engine's problem of one salt at saturation."""
-    curve = reference.salts[salt_id].law.curve
-    assert curve is not None  # checked by the callers
-    solid = reference.dissolving[salt_id]
-    side_laws = {name: c.law for name, c in reference.side_curves.items()}
-    return problem(mix, t_celsius, totals, [(solid, hold_law(curve.law, solid, side_laws))])
+    return problem(mix, t_celsius, totals, [solid_hold(reference, salt_id)])
 
 
 def metal_of(reference: Reference, salt_id: str) -> str:
@@ -127,7 +131,7 @@ def metal_of(reference: Reference, salt_id: str) -> str:
     return next(ion for ion in solid.base if ion != HYDROGEN and ion.endswith("+"))
 
 
-def _answer(
+def computed(
     reference: Reference,
     salt_id: str,
     value: CurveValue,
@@ -136,6 +140,7 @@ def _answer(
     answer: Solution,
     simple: float | None,
 ) -> Dissolved:
+    """The record of a solved problem whose first hold is the salt."""
     evaluated = reference.salts[salt_id]
     t = value.t_celsius
     s = float(answer.amount[0, 0])
@@ -230,5 +235,5 @@ def dissolve_textbook(reference: Reference, full: Dissolved, additions: Addition
     mix = textbook(mixture(reference.forms, reference.collection, solid, made, needs))
     asked = salt_problem(reference, full.salt, mix, full.temperature_c, add(given, {}).base)
     simple = full.textbook_mol_per_kg
-    answer = _answer(reference, full.salt, full.constant, mix, asked, solve(asked), simple)
+    answer = computed(reference, full.salt, full.constant, mix, asked, solve(asked), simple)
     return replace(answer, standard_uncertainty_log10=None, budget=(), other_solids=())

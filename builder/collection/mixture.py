@@ -28,6 +28,15 @@ class NotKnownError(Exception):
 
 
 @dataclass(frozen=True)
+class Hold:
+    """A product of base-ion activities that is fixed, its law, and what it exchanges."""
+
+    made: Made
+    law: tuple[float, ...]
+    exchange: Made
+
+
+@dataclass(frozen=True)
 class Mixture:
     """Base ions present and the dissolved forms they make, in the order of the arrays."""
 
@@ -125,9 +134,9 @@ def problem(
     mix: Mixture,
     t_celsius: float,
     totals: Mapping[str, float],
-    holds: Sequence[tuple[Made, tuple[float, ...]]],
+    holds: Sequence[Hold],
 ) -> Problem:
-    """A stack of one. totals: mol/kg of base ions. holds: (product of base ions, its law)."""
+    """A stack of one. totals: mol/kg of base ions."""
     bases = {b: i for i, b in enumerate(mix.bases)}
 
     def row(made: Made) -> list[float]:
@@ -139,7 +148,6 @@ def problem(
     def array(value: object) -> np.ndarray[tuple[int, ...], np.dtype[np.float64]]:
         return np.asarray([value], dtype=float)
 
-    hold_rows = [row(made) for made, _ in holds]
     return Problem(
         t_celsius=array(t_celsius),
         model=array(mix.model),
@@ -151,10 +159,10 @@ def problem(
         size=array([f.size or 0.0 for f in mix.forms]),
         linear=array([f.linear for f in mix.forms]),
         total=array([totals.get(b, 0.0) for b in mix.bases]),
-        hold=array(hold_rows).reshape(1, len(holds), len(bases)),
-        hold_water=array([made.water for made, _ in holds]).reshape(1, len(holds)),
-        hold_law=array([law for _, law in holds]).reshape(1, len(holds), 7),
-        exchange=array(hold_rows).reshape(1, len(holds), len(bases)),
+        hold=array([row(h.made) for h in holds]).reshape(1, len(holds), len(bases)),
+        hold_water=array([h.made.water for h in holds]).reshape(1, len(holds)),
+        hold_law=array([h.law for h in holds]).reshape(1, len(holds), 7),
+        exchange=array([row(h.exchange) for h in holds]).reshape(1, len(holds), len(bases)),
     )
 
 

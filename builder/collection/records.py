@@ -169,6 +169,7 @@ class SideReaction:
     law: Law
     law_evidence: str
     stands_beside: tuple[str, ...]
+    gas_per: str | None  # unit of pressure of a gas in the reaction: atm or bar
     note: str | None
     origin: Origin = field(compare=False)
 

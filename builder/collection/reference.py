@@ -6,32 +6,39 @@ choose -> fit. Pages and commands ask this record and compute nothing themselves
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from builder.chem.curve import Curve
 from builder.chem.formula import parse_formula
-from builder.chem.reaction import parse_reaction
+from builder.chem.reaction import parse_reaction, stoichiometry
+from builder.chem.rounding import ten_digits
 from builder.chem.weights import molar_mass
 from builder.collection.choice import Evaluated, evaluate
 from builder.collection.converting import convert_solubility
 from builder.collection.figures import Reported, read_figure, side_log10_k
 from builder.collection.forms import Form, Made, dissolution, dissolved_forms
 from builder.collection.laws import side_curve, water_curve
-from builder.collection.records import Collection, Salt
+from builder.collection.records import Collection, Salt, SideReaction
+
+GAS = "(g)"
+LOG10_BAR_PER_ATM = math.log10(1.01325)
 
 
 @dataclass(frozen=True)
 class Reference:
     """All that is asked of the collection.
 
-    side_curves: by side reaction id. forms: dissolved forms by formula. dissolving: the product of
+    side_curves: by side reaction id. forms: dissolved forms by formula. gases: likewise, their
+    activity is the partial pressure in bar. dissolving: the product of
     base ions of every salt. additions: what an electrolyte gives, in base ions.
     """
 
     collection: Collection
     side_curves: Mapping[str, Curve]
     forms: Mapping[str, Form]
+    gases: Mapping[str, Form]
     dissolving: Mapping[str, Made]
     additions: Mapping[str, Made]
     salts: Mapping[str, Evaluated]
@@ -50,7 +57,9 @@ def build_reference(
     (collection/rules.py) for a collection that was not inspected.
     """
     side_curves = base_curves(collection)
-    forms = dissolved_forms(collection, side_curves)
+    everything = dissolved_forms(collection, side_curves)
+    gases = {name: form for name, form in everything.items() if name.endswith(GAS)}
+    forms = {name: form for name, form in everything.items() if name not in gases}
     dissolving = {
         salt.id: dissolution(parse_reaction(salt.reaction), salt.formula, forms)
         for salt in collection.salts.values()
@@ -64,7 +73,7 @@ def build_reference(
     for salt in collection.salts.values():
         reported = report(salt, collection, forms, dissolving[salt.id], side_curves)
         salts[salt.id] = evaluate(salt, reported, collection, held_out.get(salt.id, frozenset()))
-    return Reference(collection, side_curves, forms, dissolving, additions, salts)
+    return Reference(collection, side_curves, forms, gases, dissolving, additions, salts)
 
 
 def base_curves(collection: Collection) -> dict[str, Curve]:
@@ -72,8 +81,17 @@ def base_curves(collection: Collection) -> dict[str, Curve]:
     curves: dict[str, Curve] = {}
     for reaction in collection.side_reactions.values():
         value, digits, t = side_log10_k(reaction)
-        curves[reaction.id] = side_curve(reaction, value, digits, t)
+        curve = side_curve(reaction, value, digits, t)
+        curves[reaction.id] = _per_bar(reaction, curve) if reaction.gas_per == "atm" else curve
     return curves
+
+
+def _per_bar(reaction: SideReaction, curve: Curve) -> Curve:
+    """A constant printed for pressures in atmospheres turned to bar, 1 atm = 1.01325 bar."""
+    net = stoichiometry(parse_reaction(reaction.reaction))
+    gas = float(sum(n for formula, n in net.items() if formula.endswith(GAS)))
+    law = curve.law
+    return replace(curve, law=(law[0], ten_digits(law[1] + gas * LOG10_BAR_PER_ATM), *law[2:]))
 
 
 def report(
