@@ -134,7 +134,7 @@ var Sparingly = Sparingly || {};
         state: 'refused',
         reason: solved.state === 1
           ? 'the ionic strength would pass ' + mix.limit + ' mol/kg, where the activity model ends'
-          : 'the engine found no solution',
+          : 'there is no solution within the range of the activity model',
         constant: constant,
         textbook_mol_per_kg: simpleAmount
       };

@@ -109,7 +109,7 @@ def unsolved(
     reason = (
         f"the ionic strength would pass {mix.limit:g} mol/kg, where the activity model ends"
         if state == BEYOND_LIMIT
-        else "the engine found no solution"
+        else "there is no solution within the range of the activity model"
     )
     return replace(refused(salt_id, value, reason), textbook_mol_per_kg=simple)
 
@@ -226,7 +226,7 @@ def dissolve_textbook(reference: Reference, full: Dissolved, additions: Addition
     the collection does not know which other forms there are, so that nothing is hidden.
     """
     if full.textbook_mol_per_kg is None:
-        reason = full.reason or "the engine found no solution"
+        reason = full.reason or "there is no solution within the range of the activity model"
         return Dissolved(full.salt, full.temperature_c, "refused", reason, full.constant)
     solid = reference.dissolving[full.salt]
     given = [(m, reference.additions[formula]) for formula, m in additions if m > 0.0]

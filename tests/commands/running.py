@@ -7,6 +7,7 @@ import functools
 import io
 import json
 import os
+import signal
 import subprocess
 import sys
 from collections.abc import Sequence
@@ -63,8 +64,16 @@ def program(arguments: Sequence[str], **options: Any) -> subprocess.Popen[str]:
     environment = {**os.environ, "PYTHONPATH": str(ROOT), **options.pop("env", {})}
     environment.pop("PYTHONUNBUFFERED", None)  # streams as a user has them
     return subprocess.Popen(
-        [sys.executable, "-m", "builder", *arguments], env=environment, **{**piped, **options}
+        [sys.executable, "-m", "builder", *arguments],
+        env=environment,
+        preexec_fn=_mind_ctrl_c,
+        **{**piped, **options},
     )
+
+
+def _mind_ctrl_c() -> None:
+    """A suite started in the background has Ctrl-C ignored; the program under test must not."""
+    signal.signal(signal.SIGINT, signal.SIG_DFL)
 
 
 def there(*arguments: str, **options: Any) -> Ran:
