@@ -6,6 +6,7 @@ centred dots, subscript digits, superscript charges, `½` before a part.
 """
 
 import difflib
+import functools
 import re
 from dataclasses import dataclass
 from fractions import Fraction
@@ -74,6 +75,7 @@ class Formula:
     state: str  # 'aq', 's', 'g', 'l' or empty
 
 
+@functools.cache
 def parse_formula(text: str) -> Formula:
     """Read one formula strictly; `FormulaError` says where and what would be right."""
     return _Reader(text).formula()

@@ -4,6 +4,7 @@ Terms are joined by ` + ` with its spaces, the sides by one `=`. A coefficient s
 formula, with a space or without (`2H2O`, `0.5 O2`).
 """
 
+import functools
 import re
 from collections.abc import Mapping
 from dataclasses import dataclass
@@ -33,6 +34,7 @@ class Reaction:
     right: Terms
 
 
+@functools.cache
 def parse_reaction(text: str) -> Reaction:
     """Read a reaction; `ReactionError` says where and what would be right."""
     if len(text) > LONGEST_TEXT:

@@ -24,6 +24,13 @@ from builder.collection.mixture import (
 )
 from builder.collection.reference import Reference
 
+# Ions of the electrolytes that every sheet offers; beside them those that share an ion with the
+# salt. The command line takes every electrolyte of the collection.
+BACKGROUND = frozenset(
+    ("H^+", "Na^+", "K^+", "NH4^+", "Mg^2+", "Ca^2+",
+     "Cl^-", "NO3^-", "ClO4^-", "SO4^2-", "CO3^2-", "CH3COO^-")
+)  # fmt: skip
+
 
 def curve_json(curve: Curve) -> dict[str, Any]:
     """A curve in the form of templates/curve.js."""
@@ -87,9 +94,13 @@ def sheet_payload(reference: Reference, salt_id: str) -> dict[str, Any]:
     if curve is None:
         return {"salt": salt_id, "refused": evaluated.refused}
     side_laws = {name: c.law for name, c in reference.side_curves.items()}
+    offered = [
+        e for e in reference.collection.electrolytes.values()
+        if set(reference.additions[e.formula].base) <= BACKGROUND | set(solid.base)
+    ]  # fmt: skip
     ions = {HYDROGEN, *solid.base}
-    for made in reference.additions.values():
-        ions |= set(made.base)
+    for electrolyte in offered:
+        ions |= set(reference.additions[electrolyte.formula].base)
     forms = [f for f in reference.forms.values() if set(f.made.base) <= ions]
     used = {name for f in forms for name in f.made.constants} | set(solid.constants)
     mass = reference.molar_mass(salt.formula)
@@ -118,7 +129,7 @@ def sheet_payload(reference: Reference, salt_id: str) -> dict[str, Any]:
                 "base": _made(reference.additions[e.formula])["base"],
                 "molar_mass": ten_digits(reference.molar_mass(e.formula)),
             }
-            for e in reference.collection.electrolytes.values()
+            for e in offered
         ],
         "unknown": [
             [*pair, pair_words(*pair)]

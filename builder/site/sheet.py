@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
@@ -53,27 +54,22 @@ class TableRow:
 
 def pages(reference: Reference, frame: Frame, renderer: Renderer) -> dict[str, bytes]:
     """All sheets by address."""
-    return {
-        f"salts/{salt_id}.html": renderer.page(
-            "sheet.html",
-            {
-                **frame.context(reference.salts[salt_id].salt.name, 1, ""),
-                **sheet_context(reference, salt_id),
-            },
-            SCRIPTS,
-            sheet_payload(reference, salt_id),
-        )
-        for salt_id in reference.salts
-    }
+    out: dict[str, bytes] = {}
+    for salt_id, evaluated in reference.salts.items():
+        payload = sheet_payload(reference, salt_id)
+        context = frame.context(evaluated.salt.name, 1, "")
+        context |= sheet_context(reference, salt_id, payload)
+        address = f"salts/{salt_id}.html"
+        out[address] = renderer.page("sheet.html", context, SCRIPTS, payload)
+    return out
 
 
-def sheet_context(reference: Reference, salt_id: str) -> dict[str, Any]:
-    """What sheet.html asks for, beside the frame."""
+def sheet_context(reference: Reference, salt_id: str, payload: Mapping[str, Any]) -> dict[str, Any]:
+    """What sheet.html asks for, beside the frame. payload: what the page's answers rest on."""
     evaluated = reference.salts[salt_id]
     salt = evaluated.salt
     hazard = reference.collection.hazards[salt.hazard] if salt.hazard else None
     at_25 = dissolve(reference, salt_id, 25.0)
-    payload = sheet_payload(reference, salt_id)
     used = _used_side_reactions(reference, at_25)
     rows = [_reported_row(reference, salt_id, name) for name in evaluated.reported]
     cited = _cited(reference, salt_id, used)
