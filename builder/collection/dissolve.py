@@ -126,9 +126,12 @@ def salt_problem(
 
 
 def metal_of(reference: Reference, salt_id: str) -> str:
-    """The cation whose dissolved forms are shared out: the first one of the dissolution."""
-    solid = reference.dissolving[salt_id]
-    return next(ion for ion in solid.base if ion != HYDROGEN and ion.endswith("+"))
+    """The ion whose dissolved forms are shared out: the first cation of the dissolution.
+
+    Where there is none (silica), its first ion.
+    """
+    ions = [ion for ion in reference.dissolving[salt_id].base if ion != HYDROGEN]
+    return next((ion for ion in ions if ion.endswith("+")), ions[0])
 
 
 def computed(
