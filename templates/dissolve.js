@@ -68,6 +68,7 @@ var Sparingly = Sparingly || {};
     Object.keys(data.solid.base).forEach(function (ion) {
       if (ion !== HYDROGEN) { own.push(charge[ion]); }
     });
+    if (data.solid.base[HYDROGEN] < 0) { own.push(1); } // a hydroxide: OH^- is its anion
     if (own.length && Math.min.apply(null, own) >= 2) {
       return data.limits.two_two;
     }

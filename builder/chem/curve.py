@@ -7,11 +7,12 @@ covariance of (c0, c1, c2). Propagation: JCGM 100:2008 (GUM), 5.2, correlated in
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from builder.chem.fit import NORMAL_95, Matrix3
 from builder.chem.rounding import ten_digits
-from builder.chem.temperature import GAS_CONSTANT, LN10, basis
+from builder.chem.temperature import GAS_CONSTANT, LN10, basis_at
 from builder.chem.water import HIGHEST_C, LOWEST_C, kelvin
 
 # A constant ΔCp leaves about 0.06 in log10 K at 90 °C, seen against expressions fitted over the
@@ -81,7 +82,7 @@ def at(curve: Curve, t_celsius: float) -> CurveValue:
             f"which can be carried {curve.carries_k:g} K at most"
         )
         return CurveValue(t_celsius, "refused", beyond, None, None, k, reason)
-    functions = [float(b) for b in basis(kelvin(t_celsius), curve.law[0])]
+    functions = basis_at(kelvin(t_celsius), curve.law[0])
     value = math.fsum(c * b for c, b in zip(curve.law[1:], functions, strict=True))
     state = "beyond-range" if beyond > 0.0 else "within-range"
     return CurveValue(
@@ -89,7 +90,7 @@ def at(curve: Curve, t_celsius: float) -> CurveValue:
     )
 
 
-def _uncertainty(curve: Curve, b: list[float], t: float, beyond: float) -> float | None:
+def _uncertainty(curve: Curve, b: Sequence[float], t: float, beyond: float) -> float | None:
     if curve.covariance is None:
         return None
     c = curve.covariance

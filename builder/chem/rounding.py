@@ -7,6 +7,7 @@ one integer, `_units`, so that the two languages agree in every digit.
 Texts are ASCII (`-1.5`, `1.23e-8`); `display` makes them typographic.
 """
 
+import functools
 import math
 import re
 from decimal import Decimal
@@ -72,6 +73,7 @@ def display(text: str) -> str:
     return f"{shown} × 10{str(int(exponent)).translate(_SUPERSCRIPT)}"
 
 
+@functools.cache
 def ten_digits(x: float) -> float:
     """`x` rounded to ten significant digits, as every float in a page is."""
     _require_finite(x)

@@ -48,6 +48,18 @@ def basis(t_kelvin: Any, t0_kelvin: Any) -> Array:
     )
 
 
+def basis_at(t: float, t0: float) -> tuple[float, ...]:
+    """`basis` for one temperature: many laws are evaluated one at a time."""
+    return (
+        1.0,
+        1.0 / t - 1.0 / t0,
+        t0 / t - 1.0 + math.log(t / t0),
+        t - t0,
+        1.0 / (t * t) - 1.0 / (t0 * t0),
+        t * t - t0 * t0,
+    )
+
+
 def log10_k(law: Array, t_kelvin: Array) -> Array:
     """log10 K of laws (..., 7) at temperatures (...) in kelvin."""
     functions = basis(t_kelvin, law[..., 0])
@@ -133,7 +145,7 @@ def recentred(law: Sequence[float], t0_kelvin: float = 298.15) -> tuple[float, .
         return tuple(law)
     return (
         new,
-        math.fsum(c * float(b) for c, b in zip(law[1:], basis(new, old), strict=True)),
+        math.fsum(c * b for c, b in zip(law[1:], basis_at(new, old), strict=True)),
         c1 + c2 * (old - new),
         c2,
         c3,

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from builder.collection.figures import Reported
@@ -72,9 +72,9 @@ def evaluate(
         name = _first_choice(kept, collection)
     chosen = kept[name]
     families = _families(kept, collection)
-    u_spread = spread(list(families.values()))
-    u_of = {n: _uncertainty(r, u_spread)[0] for n, r in kept.items()}
-    u, basis = _uncertainty(chosen, u_spread, len(families))
+    values = list(families.values())
+    u_of = {n: _uncertainty(r, values)[0] for n, r in kept.items()}
+    u, basis = _uncertainty(chosen, values)
     laws = {n: law_curve(salt, law, kept, u_of, collection) for n, law in salt.laws.items()}
     return Evaluated(
         salt=salt,
@@ -82,7 +82,7 @@ def evaluate(
         chosen=chosen,
         u=u,
         u_basis=basis,
-        corroboration=_corroboration(chosen, u, families, u_spread),
+        corroboration=_corroboration(chosen, u, families),
         laws=laws,
         law=laws[salt.choice.law],
     )
@@ -113,22 +113,26 @@ def _families(kept: Mapping[str, Reported], collection: Collection) -> dict[str,
     return {family: median(values) for family, values in sorted(members.items())}
 
 
-def _uncertainty(
-    r: Reported, u_spread: float | None, families: int = 0
-) -> tuple[float | None, str]:
+def _uncertainty(r: Reported, families: Sequence[float]) -> tuple[float | None, str]:
+    """Stated, or from the spread of the families; half the distance from their median at least.
+
+    A value that others contradict is less certain than their agreement among themselves.
+    """
     if r.u_stated is not None:
         return math.hypot(r.u_stated, r.u_digits), "stated by the source"
-    if u_spread is not None:
-        u = max(u_spread, U_FLOOR, r.u_digits)
-        return u, f"estimated from the spread of {families} independent families"
-    return None, "not evaluated: no uncertainty stated and no second family to compare with"
+    u_spread = spread(families)
+    if u_spread is None:
+        return None, "not evaluated: no uncertainty stated and no second family to compare with"
+    off = 0.5 * abs((r.log10_k or 0.0) - median(families)) if r.comparable else 0.0
+    u = max(u_spread, U_FLOOR, r.u_digits, off)
+    return u, f"estimated from the spread of {len(families)} independent families"
 
 
 def _corroboration(
-    chosen: Reported, u: float | None, families: Mapping[str, float], u_spread: float | None
+    chosen: Reported, u: float | None, families: Mapping[str, float]
 ) -> Corroboration:
     values = list(families.values())
     near = max(0.1, 2.0 * (u or 0.0))
     at_25 = chosen.log10_k
     agreeing = tuple(f for f, v in families.items() if at_25 is not None and abs(v - at_25) <= near)
-    return Corroboration(families, median(values) if values else None, u_spread, agreeing)
+    return Corroboration(families, median(values) if values else None, spread(values), agreeing)

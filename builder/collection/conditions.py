@@ -62,12 +62,7 @@ def solid_hold(reference: Reference, salt_id: str) -> Hold:
     curve = reference.salts[salt_id].law.curve
     assert curve is not None  # checked by the callers
     made = reference.dissolving[salt_id]
-    return Hold(made, hold_law(curve.law, made, side_laws(reference)), made)
-
-
-def side_laws(reference: Reference) -> Mapping[str, tuple[float, ...]]:
-    """Laws of the side reactions by id."""
-    return {name: c.law for name, c in reference.side_curves.items()}
+    return Hold(made, hold_law(curve.law, made, reference.side_laws), made)
 
 
 def everything_present(

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
 
 from builder.chem.curve import CurveValue, at
@@ -44,13 +44,29 @@ def dissolve(
     Never raises for a known salt, known electrolytes and any temperature: what can not be
     answered is refused in words.
     """
-    return dissolve_series(reference, salt_id, (t_celsius,), additions)[0]
+    return _series(reference, salt_id, (t_celsius,), additions, computed)[0]
 
 
-def dissolve_series(
+def amounts(
     reference: Reference, salt_id: str, temperatures: Sequence[float], additions: Additions = ()
 ) -> list[Dissolved]:
-    """The same question at several temperatures, solved as one stack."""
+    """The same question at several temperatures, solved as one stack.
+
+    Amounts and forms alone: neither the budget nor other solids are worked out.
+    """
+    return _series(reference, salt_id, temperatures, additions, solved_amounts)
+
+
+Record = Callable[[Reference, str, CurveValue, Mixture, Problem, Solution, float | None], Dissolved]
+
+
+def _series(
+    reference: Reference,
+    salt_id: str,
+    temperatures: Sequence[float],
+    additions: Additions,
+    record: Record,
+) -> list[Dissolved]:
     evaluated = reference.salts[salt_id]
     curve = evaluated.law.curve
     if curve is None:
@@ -67,7 +83,7 @@ def dissolve_series(
         return [refused(salt_id, v, str(unknown)) for v in values]
     open_values = [v for v in values if v.log10_k is not None]
     totals = add(given, {}).base
-    answers = iter(_solved(reference, salt_id, open_values, mix, totals))
+    answers = iter(_solved(reference, salt_id, open_values, mix, totals, record))
     return [refused(salt_id, v, v.reason) if v.log10_k is None else next(answers) for v in values]
 
 
@@ -83,6 +99,7 @@ def _solved(
     values: Sequence[CurveValue],
     mix: Mixture,
     totals: Mapping[str, float],
+    record: Record,
 ) -> list[Dissolved]:
     if not values:
         return []
@@ -96,7 +113,7 @@ def _solved(
         amount = float(simple.amount[i, 0]) if simple.state[i] == COMPUTED else None
         if answer.state[i] == COMPUTED:
             rows = (one(asked, i), one(answer, i))
-            out.append(computed(reference, salt_id, value, mix, *rows, amount))
+            out.append(record(reference, salt_id, value, mix, *rows, amount))
             continue
         out.append(unsolved(salt_id, value, mix, int(answer.state[i]), amount))
     return out
@@ -126,9 +143,12 @@ def salt_problem(
 
 
 def metal_of(reference: Reference, salt_id: str) -> str:
-    """The cation whose dissolved forms are shared out: the first one of the dissolution."""
-    solid = reference.dissolving[salt_id]
-    return next(ion for ion in solid.base if ion != HYDROGEN and ion.endswith("+"))
+    """The ion whose dissolved forms are shared out: the first cation of the dissolution.
+
+    Where there is none (silica), its first ion.
+    """
+    ions = [ion for ion in reference.dissolving[salt_id].base if ion != HYDROGEN]
+    return next((ion for ion in ions if ion.endswith("+")), ions[0])
 
 
 def computed(
@@ -140,7 +160,27 @@ def computed(
     answer: Solution,
     simple: float | None,
 ) -> Dissolved:
-    """The record of a solved problem whose first hold is the salt."""
+    """The record of a solved problem whose first hold is the salt, with budget and other solids."""
+    plain = solved_amounts(reference, salt_id, value, mix, asked, answer, simple)
+    u, lines = budget(reference, salt_id, value, mix, asked, answer)
+    return replace(
+        plain,
+        standard_uncertainty_log10=u,
+        budget=lines,
+        other_solids=_other_solids(reference, salt_id, mix, answer, value.t_celsius),
+    )
+
+
+def solved_amounts(
+    reference: Reference,
+    salt_id: str,
+    value: CurveValue,
+    mix: Mixture,
+    _: Problem,
+    answer: Solution,
+    simple: float | None,
+) -> Dissolved:
+    """The record without budget and other solids."""
     evaluated = reference.salts[salt_id]
     t = value.t_celsius
     s = float(answer.amount[0, 0])
@@ -162,7 +202,6 @@ def computed(
         for i, (f, n, m) in enumerate(zip(mix.forms, times, molality, strict=True))
     )
     metal_mass = reference.molar_mass(metal)
-    u, lines = budget(reference, salt_id, value, mix, asked, answer)
     return Dissolved(
         salt=salt_id,
         temperature_c=t,
@@ -181,10 +220,7 @@ def computed(
         ionic_strength=float(answer.ionic_strength[0]),
         activity_model=MODEL_NAMES[mix.model],
         ph=-float(answer.ln_activity[0, 0]) / LN10,
-        standard_uncertainty_log10=u,
-        budget=lines,
         textbook_mol_per_kg=simple,
-        other_solids=_other_solids(reference, salt_id, mix, answer, t),
     )
 
 
@@ -195,9 +231,11 @@ def _other_solids(
     log_a = {b: float(answer.ln_activity[0, i]) / LN10 for i, b in enumerate(mix.bases)}
     found: list[OtherSolid] = []
     for other_id, evaluated in reference.salts.items():
-        made = reference.dissolving[other_id]
-        if other_id == salt_id or not set(made.base) <= set(log_a) or evaluated.law.curve is None:
+        if other_id == salt_id or not reference.ions[other_id] <= log_a.keys():
             continue
+        if evaluated.law.curve is None:
+            continue
+        made = reference.dissolving[other_id]
         value = at(evaluated.law.curve, t)
         if value.log10_k is None:
             continue

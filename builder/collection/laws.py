@@ -17,7 +17,7 @@ from builder.chem.rounding import fixed, ten_digits
 from builder.chem.temperature import (
     GAS_CONSTANT,
     LN10,
-    basis,
+    basis_at,
     enthalpy_law,
     expression_law,
     log10_k,
@@ -197,7 +197,7 @@ def _points(
     if len(temperatures) < 2:
         return LawCurve(law, None, (), "", "fewer than two temperatures give a constant")
     t0 = kelvin(REFERENCE_C)
-    rows = [[float(b) for b in basis(kelvin(r.t_celsius), t0)[:3]] for r in used]
+    rows = [basis_at(kelvin(r.t_celsius), t0)[:3] for r in used]
     values = [r.log10_k for r in used if r.log10_k is not None]
     u = [max(_or(r.u_stated, 0.0), r.u_digits, 0.01) for r in used]
     scale = GAS_CONSTANT * LN10
@@ -262,7 +262,7 @@ def water_curve() -> Curve:
     """
     temperatures = [5.0 * i for i in range(21)]
     t0 = kelvin(REFERENCE_C)
-    rows = [[float(b) for b in basis(kelvin(t), t0)[:3]] for t in temperatures]
+    rows = [basis_at(kelvin(t), t0)[:3] for t in temperatures]
     values = [float(log10_kw(t)) for t in temperatures]
     c = weighted(rows, values, [0.01] * len(rows)).coefficients
     law = (t0, *(ten_digits(x) for x in c), 0.0, 0.0, 0.0)

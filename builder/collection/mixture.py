@@ -79,6 +79,8 @@ def mixture(
 def _limit(solid: Made | None, forms: Mapping[str, Form], charges: Sequence[int]) -> float:
     if solid is not None:
         own = [abs(forms[ion].charge) for ion in solid.base if ion != HYDROGEN]
+        if solid.base.get(HYDROGEN, 0.0) < 0.0:
+            own.append(1)  # a hydroxide: OH^- is its anion
         if own and min(own) >= 2:
             return LIMIT_TWO_TWO
     return LIMIT_HIGH_CHARGE if max(charges) >= 3 else LIMIT

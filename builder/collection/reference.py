@@ -30,9 +30,9 @@ LOG10_BAR_PER_ATM = math.log10(1.01325)
 class Reference:
     """All that is asked of the collection.
 
-    side_curves: by side reaction id. forms: dissolved forms by formula. gases: likewise, their
-    activity is the partial pressure in bar. dissolving: the product of
-    base ions of every salt. additions: what an electrolyte gives, in base ions.
+    side_curves, side_laws: by side reaction id. forms: dissolved forms by formula. gases: likewise,
+    their activity is the partial pressure in bar. dissolving: the product of base ions of every
+    salt, ions: which they are. additions: what an electrolyte gives, in base ions.
     """
 
     collection: Collection
@@ -40,6 +40,8 @@ class Reference:
     forms: Mapping[str, Form]
     gases: Mapping[str, Form]
     dissolving: Mapping[str, Made]
+    ions: Mapping[str, frozenset[str]]
+    side_laws: Mapping[str, tuple[float, ...]]
     additions: Mapping[str, Made]
     salts: Mapping[str, Evaluated]
 
@@ -73,7 +75,17 @@ def build_reference(
     for salt in collection.salts.values():
         reported = report(salt, collection, forms, dissolving[salt.id], side_curves)
         salts[salt.id] = evaluate(salt, reported, collection, held_out.get(salt.id, frozenset()))
-    return Reference(collection, side_curves, forms, gases, dissolving, additions, salts)
+    return Reference(
+        collection=collection,
+        side_curves=side_curves,
+        forms=forms,
+        gases=gases,
+        dissolving=dissolving,
+        ions={salt_id: frozenset(made.base) for salt_id, made in dissolving.items()},
+        side_laws={name: curve.law for name, curve in side_curves.items()},
+        additions=additions,
+        salts=salts,
+    )
 
 
 def base_curves(collection: Collection) -> dict[str, Curve]:

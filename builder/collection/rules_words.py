@@ -9,7 +9,7 @@ from typing import Any, cast
 
 from builder.chem.formula import FormulaError
 from builder.chem.reaction import parse_reaction, stoichiometry
-from builder.collection.forms import HYDROGEN
+from builder.collection.forms import HYDROGEN, WATER
 from builder.collection.records import Collection, Origin, Salt
 from builder.read.findings import Finding, Level, quoted
 
@@ -55,14 +55,14 @@ def _names(salt: Salt, collection: Collection) -> Iterator[Finding]:
 
 
 def _own_ions(reaction: str) -> list[str]:
-    """Ions set free, where they are those of the salt: not where an acid takes part."""
+    """Ions set free, where they are those of the salt: not where acid or water takes part."""
     try:
         net = stoichiometry(parse_reaction(reaction))
     except FormulaError:
         return []  # a finding of its own
-    if net.get(HYDROGEN, 0) < 0:
+    if net.get(HYDROGEN, 0) < 0 or net.get(WATER, 0) < 0:
         return []
-    return [formula for formula, n in net.items() if n > 0 and "^" in formula]
+    return [f for f, n in net.items() if n > 0 and "^" in f and f != HYDROGEN]
 
 
 def _texts(salt: Salt) -> Iterator[Finding]:

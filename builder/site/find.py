@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from builder.chem.rounding import display, significant
 from builder.collection.choice import Evaluated
-from builder.collection.dissolve import dissolve, metal_of
+from builder.collection.dissolve import amounts, metal_of
 from builder.collection.laws import REFERENCE_C
 from builder.collection.reference import Reference
 from builder.site.frame import Frame, aligned, salt_address, words_of_count
@@ -47,7 +47,7 @@ def pages(reference: Reference, frame: Frame, renderer: Renderer) -> dict[str, b
 def line(reference: Reference, salt_id: str) -> Line:
     """What the list says of one salt at 25 °C in water."""
     evaluated = reference.salts[salt_id]
-    answer = dissolve(reference, salt_id, REFERENCE_C)
+    (answer,) = amounts(reference, salt_id, (REFERENCE_C,))
     solubility = ""
     if answer.solubility_g_per_l is not None:
         solubility = display(significant(answer.solubility_g_per_l * 1e3, 2))

@@ -6,7 +6,7 @@ page picks from them exactly as `collection/mixture.py` does. Floats have ten di
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 from typing import Any
 
 from builder.chem.curve import Curve
@@ -93,7 +93,6 @@ def sheet_payload(reference: Reference, salt_id: str) -> dict[str, Any]:
     curve = evaluated.law.curve
     if curve is None:
         return {"salt": salt_id, "refused": evaluated.refused}
-    side_laws = {name: c.law for name, c in reference.side_curves.items()}
     offered = [
         e for e in reference.collection.electrolytes.values()
         if set(reference.additions[e.formula].base) <= BACKGROUND | set(solid.base)
@@ -115,7 +114,7 @@ def sheet_payload(reference: Reference, salt_id: str) -> dict[str, Any]:
         "metal_molar_mass": ten_digits(reference.molar_mass(metal)),
         "missing": [f for f in salt.needs if f not in reference.forms],
         "curve": curve_json(curve),
-        "solid": {**_made(solid), "law": _short(hold_law(curve.law, solid, side_laws))},
+        "solid": {**_made(solid), "law": _short(hold_law(curve.law, solid, reference.side_laws))},
         "forms": [_form(f) for f in forms],
         "side": {
             name: side_json(side)
@@ -137,7 +136,7 @@ def sheet_payload(reference: Reference, salt_id: str) -> dict[str, Any]:
                                       reference.collection)
         ],
         "limits": {"usual": LIMIT, "two_two": LIMIT_TWO_TWO, "high_charge": LIMIT_HIGH_CHARGE},
-        "others": _others(reference, salt_id, ions, side_laws),
+        "others": _others(reference, salt_id, ions),
     }  # fmt: skip
 
 
@@ -145,16 +144,15 @@ def _others(
     reference: Reference,
     salt_id: str,
     ions: set[str],
-    side_laws: Mapping[str, tuple[float, ...]],
 ) -> list[dict[str, Any]]:
     """Other solids of the collection that the ions here could form."""
     out: list[dict[str, Any]] = []
     for other_id, evaluated in reference.salts.items():
         made = reference.dissolving[other_id]
         curve = evaluated.law.curve
-        if other_id == salt_id or curve is None or not set(made.base) <= ions:
+        if other_id == salt_id or curve is None or not reference.ions[other_id] <= ions:
             continue
-        law = hold_law(curve.law, made, side_laws)
+        law = hold_law(curve.law, made, reference.side_laws)
         out.append(
             {
                 "salt": other_id,

@@ -10,10 +10,10 @@ from typing import Any
 
 from builder.chem.curve import Curve, at
 from builder.chem.rounding import display, fixed, significant
-from builder.chem.temperature import basis
+from builder.chem.temperature import basis_at
 from builder.chem.water import kelvin
 from builder.collection.answer import Dissolved
-from builder.collection.dissolve import dissolve, dissolve_series, metal_of
+from builder.collection.dissolve import amounts, dissolve, metal_of
 from builder.collection.figures import Reported
 from builder.collection.identity import digest, figure_digest, record_digest
 from builder.collection.laws import LawCurve, plain_van_t_hoff
@@ -136,9 +136,7 @@ def _percent(share: float) -> str:
 def _table(reference: Reference, salt_id: str) -> list[TableRow]:
     temperatures = sorted({*(5.0 * i for i in range(21)), *HOUSE_TEMPERATURES})
     rows: list[TableRow] = []
-    for t, answer in zip(
-        temperatures, dissolve_series(reference, salt_id, temperatures), strict=True
-    ):
+    for t, answer in zip(temperatures, amounts(reference, salt_id, temperatures), strict=True):
         amount = amount_text(answer)
         rows.append(
             TableRow(
@@ -199,7 +197,7 @@ _TERM_TEXTS = (
 
 def law_terms(curve: Curve, t_celsius: float) -> list[tuple[str, str, str]]:
     """The law term by term with its numbers: (what, numbers put in, result). Twin in sheet.js."""
-    functions = [float(b) for b in basis(kelvin(t_celsius), curve.law[0])]
+    functions = basis_at(kelvin(t_celsius), curve.law[0])
     out: list[tuple[str, str, str]] = []
     for name, c, b in zip(_TERM_TEXTS, curve.law[1:], functions, strict=True):
         if c != 0.0:

@@ -1,4 +1,4 @@
-"""Runs the command in this process or as a program of its own."""
+"""Runs the command, with few salts, in this process or as a program of its own."""
 
 from __future__ import annotations
 
@@ -16,11 +16,13 @@ from pathlib import Path
 from typing import Any
 from unittest import mock
 
+from small_tree import small_tree
+
 from builder.collection.inspection import Inspection, inspect
 from builder.commands import asking
 from builder.commands.main import run
 
-ROOT = Path(__file__).resolve().parents[2]
+ROOT = small_tree()
 
 
 @dataclass(frozen=True)
@@ -38,7 +40,8 @@ def here(*arguments: str) -> Ran:
     """In this process: an exception that gets out fails the test."""
     out, err = io.StringIO(), io.StringIO()
     quick = mock.patch.object(asking, "inspect", _inspect)
-    with quick, contextlib.redirect_stdout(out), contextlib.redirect_stderr(err):
+    few = mock.patch.object(asking, "shipped_folder", lambda name: ROOT / name)
+    with quick, few, contextlib.redirect_stdout(out), contextlib.redirect_stderr(err):
         code = run(arguments)
     return Ran(code, out.getvalue(), err.getvalue())
 

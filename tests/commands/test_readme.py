@@ -2,15 +2,22 @@
 
 from __future__ import annotations
 
+import os
 import re
 import subprocess
 import sys
 from pathlib import Path
 
+from small_tree import small_tree
+
 
 def run(*words: str, cwd: Path) -> subprocess.CompletedProcess[str]:
     return subprocess.run(
-        [sys.executable, "-m", "builder", *words], cwd=cwd, capture_output=True, text=True
+        [sys.executable, "-m", "builder", *words],
+        cwd=cwd,
+        env={**os.environ, "PYTHONPATH": str(small_tree())},
+        capture_output=True,
+        text=True,
     )
 
 
@@ -24,7 +31,7 @@ def test_the_example_of_a_new_salt_is_accepted_and_answered(
     salts = tmp_path / "our_constants" / "salts"
     salts.mkdir(parents=True)
     (salts / f"{name[1]}.yaml").write_text(example, encoding="utf-8")
-    done = run("value", name[1], "--at", "25", "--constants", str(salts.parent), cwd=repository)
+    done = run("value", name[1], "--at", "25", "--constants", str(salts.parent), cwd=tmp_path)
     assert done.returncode == 0, done.stderr
     assert "5.18" in done.stdout  # log10 of the 6.60E-6 printed in the example, by hand -5.180
 

@@ -8,6 +8,7 @@ import sys
 from pathlib import Path
 
 import pytest
+from small_tree import small_tree
 
 
 def processor_features() -> str:
@@ -40,12 +41,14 @@ def build(target: Path, cwd: Path, extra: dict[str, str], umask: int) -> str:
     return (target / "MANIFEST.sha256").read_text(encoding="utf-8")
 
 
+@pytest.mark.parametrize("salts", ["few", pytest.param("all", marks=pytest.mark.sweep)])
 def test_other_surroundings_same_manifest(
-    tmp_path: Path, repository: Path, monkeypatch: pytest.MonkeyPatch
+    salts: str, tmp_path: Path, repository: Path, monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    monkeypatch.setenv("PYTHONPATH", str(repository))
+    tree = small_tree() if salts == "few" else repository
+    monkeypatch.setenv("PYTHONPATH", str(tree))
     (tmp_path / "elsewhere").mkdir()
-    first = build(tmp_path / "one", repository, SURROUNDINGS[0], 0o022)
+    first = build(tmp_path / "one", tree, SURROUNDINGS[0], 0o022)
     second = build(tmp_path / "two", tmp_path / "elsewhere", SURROUNDINGS[1], 0o077)
     assert first == second
     assert len(first.splitlines()) > 12

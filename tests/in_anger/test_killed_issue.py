@@ -9,6 +9,7 @@ import time
 from pathlib import Path
 
 import pytest
+from small_tree import small_tree
 
 from builder.site.writer import recover
 
@@ -34,27 +35,23 @@ def whole(site: Path) -> str:
 
 
 @pytest.fixture(scope="module")
-def sites(
-    tmp_path_factory: pytest.TempPathFactory, repository: Path
-) -> tuple[Path, str, str, float]:
+def sites(tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, str, str, float]:
     """(folder of the old site, old manifest, new manifest, seconds a run takes)."""
     base = tmp_path_factory.mktemp("killed")
-    subprocess.run(issue(base / "old", on="2026-01-01"), cwd=repository, check=True)
+    subprocess.run(issue(base / "old", on="2026-01-01"), cwd=small_tree(), check=True)
     start = time.monotonic()
-    subprocess.run(issue(base / "new", on="2026-02-02"), cwd=repository, check=True)
+    subprocess.run(issue(base / "new", on="2026-02-02"), cwd=small_tree(), check=True)
     seconds = time.monotonic() - start
     return base / "old", whole(base / "old"), whole(base / "new"), seconds
 
 
 @pytest.mark.parametrize("share", MOMENTS)
-def test_killed(
-    share: float, sites: tuple[Path, str, str, float], tmp_path: Path, repository: Path
-) -> None:
+def test_killed(share: float, sites: tuple[Path, str, str, float], tmp_path: Path) -> None:
     old, before, after, seconds = sites
     site = tmp_path / "site"
     shutil.copytree(old, site)
     run = subprocess.Popen(
-        issue(site, on="2026-02-02"), cwd=repository,
+        issue(site, on="2026-02-02"), cwd=small_tree(),
         stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL,
     )  # fmt: skip
     time.sleep(share * seconds)

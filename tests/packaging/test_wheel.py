@@ -8,6 +8,8 @@ import sys
 import venv
 from pathlib import Path
 
+from small_tree import small_tree
+
 
 def run(*command: str, cwd: Path) -> None:
     environment = {k: v for k, v in os.environ.items() if not k.startswith("PYTHON")}
@@ -15,12 +17,11 @@ def run(*command: str, cwd: Path) -> None:
     assert done.returncode == 0, done.stdout + done.stderr
 
 
-def test_an_installed_wheel_builds_the_same_site_from_an_empty_folder(
-    repository: Path, tmp_path: Path
-) -> None:
+def test_an_installed_wheel_builds_the_same_site_from_an_empty_folder(tmp_path: Path) -> None:
+    tree = small_tree()
     run(
         sys.executable, "-m", "pip", "wheel", "--quiet", "--no-deps", "--no-build-isolation",
-        "--wheel-dir", str(tmp_path / "wheel"), str(repository), cwd=tmp_path,
+        "--wheel-dir", str(tmp_path / "wheel"), str(tree), cwd=tmp_path,
     )  # fmt: skip
     (wheel,) = (tmp_path / "wheel").glob("sparingly-*.whl")
     venv.create(tmp_path / "env", with_pip=True)
@@ -29,7 +30,7 @@ def test_an_installed_wheel_builds_the_same_site_from_an_empty_folder(
     empty = tmp_path / "empty"
     empty.mkdir()
     run(str(tmp_path / "env" / "bin" / "sparingly"), "issue", cwd=empty)
-    run(sys.executable, "-m", "builder", "issue", "--out", str(tmp_path / "clone"), cwd=repository)
+    run(sys.executable, "-m", "builder", "issue", "--out", str(tmp_path / "clone"), cwd=tree)
     installed = (empty / "site_out" / "MANIFEST.sha256").read_text()
     assert installed == (tmp_path / "clone" / "MANIFEST.sha256").read_text()
     assert "salts/lead-sulfate.html" in installed
