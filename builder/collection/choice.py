@@ -84,8 +84,16 @@ def evaluate(
         u_basis=basis,
         corroboration=_corroboration(chosen, u, families),
         laws=laws,
-        law=laws[salt.choice.law],
+        law=_law(salt, laws, without),
     )
+
+
+def _law(salt: Salt, laws: Mapping[str, LawCurve], without: frozenset[str]) -> LawCurve:
+    """The chosen law; where it rests on what is held out, the first one that does not."""
+    chosen = laws[salt.choice.law]
+    if chosen.curve is not None or not without:
+        return chosen
+    return next((law for law in laws.values() if law.curve is not None), chosen)
 
 
 def _first_choice(kept: Mapping[str, Reported], collection: Collection) -> str:

@@ -123,3 +123,21 @@ def _molality(
         f"{significant(m, 5)} mol/kg",
     )
     return m, u, (Step("printed text read as a number", figure.printed.text, f"{x:g}"), step)
+
+
+def in_water(determination: Determination) -> bool:
+    """A solubility measured in water at a stated temperature between 0 and 100 °C."""
+    figure = determination.figure
+    return (
+        figure is not None
+        and figure.quantity == "solubility"
+        and figure.medium == "water"
+        and figure.temperature_c is not None
+        and 0.0 <= figure.temperature_c <= 100.0
+    )
+
+
+def printed_molality(salt: Salt, figure: Figure, collection: Collection) -> float:
+    """A printed solubility as mol per kg of all water in the solution."""
+    t = 25.0 if figure.temperature_c is None else figure.temperature_c
+    return _molality(salt, figure, collection, t)[0]

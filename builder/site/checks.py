@@ -9,7 +9,8 @@ from dataclasses import dataclass
 from builder.chem.curve import at
 from builder.chem.rounding import display, fixed, with_uncertainty
 from builder.collection.choice import Evaluated
-from builder.collection.laws import REFERENCE_C
+from builder.collection.holding_out import HeldOut, figures, held_out
+from builder.collection.laws import REFERENCE_C, median
 from builder.collection.reference import Reference
 from builder.read.findings import LEVELS, Finding
 from builder.site.frame import Frame, aligned, salt_address, words_of_count
@@ -63,6 +64,34 @@ class Support:
     spread: str
 
 
+@dataclass(frozen=True)
+class Predicted:
+    """Solubilities of one salt predicted without them, as texts; deviations in log10."""
+
+    evaluated: Evaluated
+    law: str
+    rows: int
+    unanswered: int
+    middle: str
+    largest: str
+    reason: str
+
+
+def prediction(row: HeldOut, reference: Reference) -> Predicted:
+    """One line of the table of held-out solubilities."""
+    off = [deviation for _, deviation in row.rows]
+    far = max(off, key=abs) if off else 0.0
+    return Predicted(
+        evaluated=reference.salts[row.salt],
+        law=LAW_WORDS.get(row.law, ""),
+        rows=len(off),
+        unanswered=row.unanswered,
+        middle=display(fixed(median(off), 3)) if off else "",
+        largest=display(fixed(far, 2)) if off else "",
+        reason=row.reason,
+    )
+
+
 def pages(
     reference: Reference, frame: Frame, renderer: Renderer, findings: Sequence[Finding]
 ) -> dict[str, bytes]:
@@ -74,6 +103,8 @@ def pages(
     sources = reference.collection.sources
     families = {sources[d.citation.source].family for d in every}
     counts = Counter(f.level for f in findings)
+    table = held_out(reference)
+    predicted = [prediction(row, reference) for row in table]
     context = frame.context("Checks", 0, ADDRESS) | {
         "findings": [(level, [f for f in findings if f.level == level]) for level in LEVELS],
         "any_finding": bool(findings),
@@ -94,6 +125,9 @@ def pages(
         "laws": shares((law.kind for law in laws), (e.law.law.kind for e in salts), LAW_WORDS),
         "support": [support(e) for e in sorted(salts, key=lambda e: (e.salt.formula, e.salt.name))],
         "sources": sources,
+        "predicted": predicted,
+        "prediction": figures(table),
+        "median": display(fixed(figures(table).median, 3)),
         "aligned": aligned,
         "address": salt_address,
     }
