@@ -14,6 +14,7 @@ from builder.read.findings import quoted
 
 LARGEST_FILE = 10_000_000  # bytes
 LONGEST_CELL = 1_000  # characters
+REQUIRED = ("salt", "at")  # columns every file has
 
 Question = TypeVar("Question")
 Wrong = tuple[int, str]  # line and what is wrong there
@@ -26,9 +27,13 @@ class Row:
     line: int
     cells: Mapping[str, str]
 
-    def added(self) -> list[str]:
-        """The electrolytes of the column `with`."""
-        return [part for part in self.cells.get("with", "").split(";") if part.strip()]
+    def cell(self, column: str) -> str | None:
+        """None where it is empty."""
+        return self.cells.get(column) or None
+
+    def parts(self, column: str) -> list[str]:
+        """What a cell holds several of, parted by `;`."""
+        return [part for part in self.cells.get(column, "").split(";") if part.strip()]
 
 
 def questions(path: Path, columns: Sequence[str], ask: Callable[[Row], Question]) -> list[Question]:
@@ -65,7 +70,7 @@ def _rows(path: Path, columns: Sequence[str], shown: str, wrong: list[Wrong]) ->
     except csv.Error as problem:
         wrong.append((reader.line_num, f"not CSV ({problem})"))
     if not rows and not wrong:
-        raise CommandError(f"{shown} has no rows; write {','.join(columns)} and a row below it")
+        raise CommandError(f"{shown} has no rows; write {','.join(REQUIRED)} and a row below it")
     return rows
 
 
@@ -96,8 +101,8 @@ def _head(cells: Sequence[str], columns: Sequence[str], shown: str) -> list[str]
         )
     if twice := [name for name in columns if head.count(name) > 1]:
         raise CommandError(f"{shown} has the column {twice[0]} twice; keep one")
-    if missing := [name for name in ("salt", "at") if name not in head]:
-        raise CommandError(f"{shown} has no column {missing[0]}; begin with {','.join(columns)}")
+    if missing := [name for name in REQUIRED if name not in head]:
+        raise CommandError(f"{shown} has no column {missing[0]}; begin with {','.join(REQUIRED)}")
     return head
 
 
@@ -106,10 +111,10 @@ def _shape(cells: Sequence[str], head: Sequence[str]) -> str:
     if len(cells) > len(head):
         return (
             f"{len(cells)} cells for {len(head)} columns; put a cell that holds a comma in quotes, "
-            "write decimals with a point and part electrolytes by ';'"
+            "write decimals with a point and part electrolytes and solids by ';'"
         )
     if any(len(cell) > LONGEST_CELL for cell in cells):
         return f"a cell of more than {LONGEST_CELL} characters; shorten it"
     filled = {name for name, cell in zip(head, cells, strict=False) if cell.strip()}
-    missing = [name for name in ("salt", "at") if name not in filled]
+    missing = [name for name in REQUIRED if name not in filled]
     return f"no {missing[0]}; fill the cell in" if missing else ""

@@ -11,6 +11,7 @@ from typing import Any, NoReturn
 from builder import __version__
 from builder.collection.names import electrolyte_names, salt_names
 from builder.commands import asking, batch, dissolve, dissolve_text, inspect, value
+from builder.commands.asking import Around
 from builder.commands.outcome import FINE, CommandError, Outcome
 from builder.commands.telling import csv_text, json_text
 
@@ -64,32 +65,46 @@ def _dissolve(given: argparse.Namespace) -> Outcome:
     names = salt_names(reference.collection)
     electrolytes = electrolyte_names(reference.collection)
 
-    def question(salt: str, at: str, added: Sequence[str]) -> Callable[[], dissolve.Answer]:
+    def question(salt: str, at: str, around: Around) -> Callable[[], dissolve.Answer]:
         t = asking.temperature(at)
         salt_id = asking.salt(names, reference, salt)
-        additions = asking.additions(electrolytes, reference, added)
-        return lambda: dissolve.answer(reference, salt_id, t, additions, given.textbook)
+        conditions = asking.conditions(names, electrolytes, reference, salt_id, around)
+        return lambda: dissolve.answer(reference, salt_id, t, conditions, given.textbook)
 
     if given.batch is not None:
         asked = batch.questions(
             given.batch,
-            ("salt", "at", "with"),
-            lambda row: question(row.cells["salt"], row.cells["at"], row.added()),
+            ("salt", "at", "with", "ph", "co2", "form-also", "acid", "base"),
+            lambda row: question(row.cells["salt"], row.cells["at"], _around(row)),
         )
         return Outcome(FINE, csv_text(dissolve.KEYS, [dissolve.record(ask()) for ask in asked]))
-    answer = question(given.salt, given.at, given.additions)()
+    typed = Around(given.added, given.ph, given.co2, given.also, given.acid, given.base)
+    answer = question(given.salt, given.at, typed)()
     if given.json:
         return Outcome(FINE, json_text(dissolve.record(answer)))
     return Outcome(FINE, dissolve_text.text(reference, answer))
 
 
+def _around(row: batch.Row) -> Around:
+    """What surrounds the salt of a row; an empty cell asks for nothing."""
+    return Around(
+        added=row.parts("with"),
+        ph=row.cell("ph"),
+        co2=row.cell("co2"),
+        also=row.parts("form-also"),
+        acid=row.cell("acid"),
+        base=row.cell("base"),
+    )
+
+
 def _one_or_many(given: argparse.Namespace) -> None:
     """A salt at a temperature, or a file of them."""
-    alone = given.salt is not None or given.at is not None or getattr(given, "additions", [])
+    columns = ("salt", "at", "added", "ph", "co2", "also", "acid", "base")
+    alone = any(getattr(given, name, None) not in (None, []) for name in columns)
     if given.batch is not None and (alone or given.json):
         raise CommandError(
-            "--batch asks what its file says and answers in CSV; leave out the salt, --at, "
-            "--with and --json"
+            "--batch asks what its file says and answers in CSV; leave out the salt, --json and "
+            "the options that are columns of the file, as --at"
         )
     if given.batch is None and given.salt is None:
         raise CommandError("no salt is named; write it as in 'sparingly value PbSO4 --at 37'")
@@ -175,11 +190,25 @@ def _parser() -> argparse.ArgumentParser:
     _question(one)
     one.add_argument(
         "--with",
-        dest="additions",
+        dest="added",
         metavar="ELECTROLYTE=AMOUNT",
         action="append",
         default=[],
         help="what else is in the solution, as in Na2SO4=0.05mol/kg; can be repeated",
+    )
+    one.add_argument("--ph", metavar="PH", help="hold the pH, as in 8.0: -log10 a(H+)")
+    one.add_argument("--acid", metavar="FORMULA", help="what lowers a held pH; default: HCl")
+    one.add_argument("--base", metavar="FORMULA", help="what raises a held pH; default: NaOH")
+    one.add_argument(
+        "--co2", metavar="BAR", help="partial pressure of carbon dioxide over it, as in 0.0004"
+    )
+    one.add_argument(
+        "--form-also",
+        dest="also",
+        metavar="SALT",
+        action="append",
+        default=[],
+        help="another solid that may form; can be repeated",
     )
     one.add_argument(
         "--textbook", action="store_true", help="the answer from free ions, beside the full one"

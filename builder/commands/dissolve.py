@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import asdict, dataclass
+from dataclasses import asdict, dataclass, replace
 from typing import Any
 
 from builder.collection.answer import Dissolved
-from builder.collection.dissolve import dissolve, dissolve_textbook
+from builder.collection.conditions import Conditions
+from builder.collection.dissolve import dissolve_textbook, refused
 from builder.collection.reference import Reference
+from builder.collection.surroundings import dissolve_under
 from builder.commands.telling import number
+from builder.commands.value import value_at
 
 KEYS = (
     "salt",
@@ -34,6 +37,11 @@ KEYS = (
     "budget",
     "other_solids",
     "textbook_factor",
+    "ph_held",
+    "co2_bar",
+    "titrant",
+    "titrant_mol_per_kg",
+    "formed",
 )
 
 
@@ -43,25 +51,42 @@ class Answer:
 
     shown: Dissolved
     full: Dissolved
-    additions: Mapping[str, float]
+    conditions: Conditions
 
     @property
     def textbook_asked(self) -> bool:
         return self.shown is not self.full
+
+    @property
+    def beyond_textbook(self) -> bool:
+        """Is anything asked that the textbook's answer does not know?"""
+        asked = self.conditions
+        return asked.ph is not None or asked.co2_bar is not None or bool(asked.also)
+
+    @property
+    def holds(self) -> Conditions:
+        """What the answer shown keeps to: the textbook's knows additions only."""
+        asked = self.conditions
+        return Conditions(asked.additions) if self.textbook_asked else asked
 
 
 def answer(
     reference: Reference,
     salt_id: str,
     t_celsius: float,
-    additions: Mapping[str, float],
+    conditions: Conditions,
     textbook: bool,
 ) -> Answer:
-    """Ask the collection; additions in mol/kg by electrolyte."""
-    given = list(additions.items())
-    full = dissolve(reference, salt_id, t_celsius, given)
-    shown = dissolve_textbook(reference, full, given) if textbook else full
-    return Answer(shown, full, additions)
+    """Ask the collection. Refused where it has no constant for a solid that may form."""
+    full = dissolve_under(reference, salt_id, t_celsius, conditions)
+    for other in conditions.also:
+        value = value_at(reference.salts[other], t_celsius)
+        if value.log10_k is None and full.state == "computed":
+            reason = f"there is no constant for {other}, which may form: {value.reason}"
+            simple = full.textbook_mol_per_kg
+            full = replace(refused(salt_id, full.constant, reason), textbook_mol_per_kg=simple)
+    shown = dissolve_textbook(reference, full, conditions.additions) if textbook else full
+    return Answer(shown, full, conditions)
 
 
 def record(asked: Answer) -> dict[str, Any]:
@@ -69,6 +94,7 @@ def record(asked: Answer) -> dict[str, Any]:
 
     lower_95, upper_95 are of solubility_mol_per_kg; a negative solubility is what comes out of a
     solution that is oversaturated as made up. textbook_factor: full answer over the textbook's.
+    ph_held, co2_bar: null too in the textbook's answer, which holds neither.
     """
     it = asked.shown
     computed = it.state == "computed"
@@ -100,6 +126,11 @@ def record(asked: Answer) -> dict[str, Any]:
         "budget": rows(it.budget),
         "other_solids": rows(it.other_solids),
         "textbook_factor": number(asked.full.factor),
+        "ph_held": number(asked.holds.ph),
+        "co2_bar": number(asked.holds.co2_bar),
+        "titrant": it.titrant or None,
+        "titrant_mol_per_kg": number(it.titrant_mol_per_kg),
+        "formed": rows(it.formed),
     }
 
 

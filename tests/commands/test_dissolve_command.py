@@ -13,6 +13,7 @@ KEYS = [
     "solubility_g_per_l_anhydrous", "forms", "ionic_strength", "activity_model", "ph",
     "standard_uncertainty_log10", "textbook_mol_per_kg", "state", "reason", "lower_95", "upper_95",
     "metal", "metal_mg_per_kg", "metal_mg_per_l", "budget", "other_solids", "textbook_factor",
+    "ph_held", "co2_bar", "titrant", "titrant_mol_per_kg", "formed",
 ]  # fmt: skip
 BATH = ("lead-sulfate", "--at", "37", "--with", "Na2SO4=0.05mol/kg")
 LEAD_G_PER_MOL = 207.2  # IUPAC abridged standard atomic weight
@@ -161,7 +162,7 @@ def test_other_solids_are_named() -> None:
         ("Na2SO4=50mol/kg", "more than water can hold"),
         ("Na2SO4=-1mol/kg", "no amount"),
         ("=1mol/kg", "no electrolyte is called ''"),
-        ("Na2SO3=1mol/kg", "perhaps"),
+        ("Na2SO7=1mol/kg", "perhaps"),
         ("", "write electrolyte=amount"),
     ],
 )

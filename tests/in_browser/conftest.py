@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
+from small_tree import small_tree
 
 from builder.collection.folders import shipped_folder
 from builder.collection.inspection import Inspection, inspect
@@ -35,4 +36,14 @@ def site(
     """The folder of the built site."""
     folder = tmp_path_factory.mktemp("site") / "site_out"
     write_site(build_site(reference, inspection.findings, ISSUE_DATE), folder)
+    return folder
+
+
+@pytest.fixture(scope="session")
+def few_site(tmp_path_factory: pytest.TempPathFactory) -> Path:
+    """A site of the twelve salts of small_tree.py, where what is found is known by heart."""
+    found = inspect([small_tree() / "constants"])
+    assert found.reference is not None
+    folder = tmp_path_factory.mktemp("few") / "site_out"
+    write_site(build_site(found.reference, found.findings, ISSUE_DATE), folder)
     return folder

@@ -358,8 +358,8 @@ def test_bath_refuses_unknown_parts_of_the_address_in_words(page: Page, site: Pa
     assert page.inner_text("#at") == "37"
 
 
-def test_bath_sorts_by_any_column_both_ways(page: Page, site: Path) -> None:
-    open_page(page, site, "bath-table.html#t=0")
+def test_bath_sorts_by_any_column_both_ways(page: Page, few_site: Path) -> None:
+    open_page(page, few_site, "bath-table.html#t=0")
     for column, name in ((2, "log"), (4, "K"), (1, "Name")):
         button = page.locator("#bath thead button").nth(column)
         for order, falling in (("ascending", False), ("descending", True)):
@@ -406,7 +406,9 @@ def test_the_list_holds_every_salt_with_its_solubility(site: Path, reference: Re
         plain = re.sub(r"<[^>]+>", "", row[0])
         assert evaluated.salt.name in plain
         grams = dissolve(reference, salt_id, 25.0).solubility_g_per_l
-        assert grams is not None
+        if grams is None:
+            assert "refused" in plain
+            continue
         shown = number(plain.split()[-1])
         assert shown == pytest.approx(grams * 1e3, rel=0.05)
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from pathlib import Path
 
 import pytest
@@ -73,6 +74,34 @@ def test_displayed_digits_are_those_of_python(
     assert page.inner_text("#address-error") == ""
 
 
+@pytest.mark.parametrize("served", ["file", "http"])
+def test_the_walk(served: str, page: Page, site: Path, local_server: Callable[[Path], str]) -> None:
+    """Types `PbSO4 37`, reads the constant with its interval and the dissolved lead in water and
+    in 0.05 mol/kg Na2SO4, ion pairs included, and follows the number to its printed source."""
+    start = f"file://{site}" if served == "file" else local_server(site)
+    page.goto(f"{start}/index.html")
+    page.keyboard.press("Tab")
+    page.fill("#query", "PbSO4 37")
+    page.press("#query", "Enter")
+    page.wait_for_url(f"{start}/salts/lead-sulfate.html#t=37")
+    assert page.inner_text("#t-words") == "37 °C"
+    assert page.inner_text("#k").endswith("× 10⁻⁸")
+    assert page.inner_text("#k-low")
+    assert page.inner_text("#k-high")
+    in_water = float(page.inner_text("#mg"))
+    assert 30.0 < in_water < 40.0
+    page.select_option("#salt-0", "Na2SO4")
+    page.fill("#amount-0", "0.05")
+    with_sulfate = float(page.inner_text("#mg"))
+    assert 2.5 < with_sulfate < 4.5  # mg Pb per litre, near enough per kg
+    shares = page.inner_text("#shares").splitlines()
+    pairs = [float(line.split()[1]) for line in shares if "SO4" in line]
+    assert sum(pairs) > 60.0  # per cent of the dissolved lead
+    assert float(page.inner_text("#factor")) > 4.5
+    page.click("#value-powell-2009 a")
+    assert "Powell" in page.inner_text("#source-powell-2009").title()
+
+
 def test_typing_changes_the_answer_and_the_address(page: Page, site: Path) -> None:
     open_sheet(page, site, "lead-sulfate.html")
     in_water = page.inner_text("#mg")
@@ -114,8 +143,8 @@ def test_bad_input_gets_a_sentence_and_nothing_is_computed_from_it(
 
 
 def test_what_is_not_known_is_refused_in_words(page: Page, site: Path) -> None:
-    open_sheet(page, site, "thallium-chloride.html#t=25&with=K2CrO4:0.1mol/kg")
-    assert "nothing on how Tl⁺ and CrO₄²⁻ combine" in page.inner_text("#amount-state")
+    open_sheet(page, site, "mercury-i-sulfate.html#t=25&with=Na2CO3:0.1mol/kg")
+    assert "nothing on how Hg₂²⁺ and CO₃²⁻ combine" in page.inner_text("#amount-state")
     assert not page.is_visible("#mg")
     open_sheet(page, site, "barium-sulfate.html#t=25&with=NaCl:0.45mol/kg")
     assert "would pass 0.2 mol/kg" in page.inner_text("#amount-state")

@@ -9,6 +9,12 @@ import pytest
 from playwright.sync_api import Page
 
 
+@pytest.fixture(scope="session")
+def site(few_site: Path) -> Path:
+    """Few salts: what a query finds does not change when the collection grows."""
+    return few_site
+
+
 @pytest.fixture(params=["file", "http"])
 def start(request: pytest.FixtureRequest, site: Path, local_server: Callable[[Path], str]) -> str:
     """Address of the first page's folder, once as files and once from a web server."""
