@@ -89,7 +89,12 @@ class Dissolved:
 
     @property
     def metal_interval(self) -> tuple[float, float] | None:
-        """95 % interval of the metal, mg/L: what was added is exact, what dissolves is not."""
+        """95 % interval of the metal, mg/L: what was added is exact, what dissolves is not.
+
+        None where another solid formed too: it holds metal of its own.
+        """
+        if self.formed:
+            return None
         s, litre = self.solubility_mol_per_kg, self.solubility_mol_per_l
         if self.interval is None or s is None or litre is None or self.metal_mg_per_l is None:
             return None

@@ -70,7 +70,9 @@ def _impossible(figure: Figure, x: float) -> str:
     match figure.quantity:
         case "ksp":
             least = 10.0**-LARGEST_LOG10_K
-            return "" if least < x < LARGEST_KSP else "a solubility product lies in 0 to 1000"
+            # a constant in acid, written with its own reaction, may be large
+            most = LARGEST_KSP if figure.reaction is None else 10.0**LARGEST_LOG10_K
+            return "" if least < x < most else "a solubility product lies in 0 to 1000"
         case "gibbs-energy":
             joules = abs(x) * JOULES[figure.unit or "kJ/mol"]
             return "" if joules <= LARGEST_GIBBS_J else "it is at most 600 kJ/mol"

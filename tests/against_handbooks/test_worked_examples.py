@@ -27,7 +27,7 @@ from builder.chem.problem import COMPUTED, IDEAL, Solution
 from builder.chem.temperature import combined, constant_law
 from builder.collection.dissolve import dissolve
 from builder.collection.forms import Form, Made, add
-from builder.collection.mixture import Mixture, hold_law, mixture, problem, textbook
+from builder.collection.mixture import Hold, Mixture, hold_law, mixture, problem, textbook
 from builder.collection.reference import Reference
 
 
@@ -77,7 +77,8 @@ def _solve(
     holds = []
     if solid is not None:
         made, ksp = solid
-        holds = [(made, hold_law(constant_law(math.log10(ksp), 25.0), made, side_laws))]
+        law = hold_law(constant_law(math.log10(ksp), 25.0), made, side_laws)
+        holds = [Hold(made, law, made)]
     answer = solve(problem(mix, 25.0, totals, holds))
     assert answer.state[0] == COMPUTED
     return answer

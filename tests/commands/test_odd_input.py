@@ -28,7 +28,7 @@ AMOUNTS = st.builds(
     st.sampled_from(["mol/kg", "mol/L", "mg/L", "", " g/kg"]),
 )
 QUIETLY = settings(
-    max_examples=150, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture]
+    max_examples=60, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture]
 )
 
 

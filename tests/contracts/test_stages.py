@@ -7,8 +7,8 @@ from dataclasses import replace
 from pathlib import Path
 
 import pytest
+from small_tree import small_tree
 
-from builder.collection.folders import shipped_folder
 from builder.collection.inspection import inspect
 from builder.collection.records import Collection
 from builder.collection.reference import build_reference
@@ -19,7 +19,7 @@ ORDER = ("read", "chem", "collection", "site", "commands")
 
 @pytest.fixture(scope="module")
 def collection() -> Collection:
-    return inspect([shipped_folder("constants")]).collection
+    return inspect([small_tree() / "constants"]).collection
 
 
 def test_dependencies_point_downwards() -> None:

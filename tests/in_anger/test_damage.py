@@ -14,8 +14,9 @@ from pathlib import Path
 from typing import TypeAlias
 
 import pytest
+from small_tree import small_tree
 
-from builder.collection.folders import read_folders, shipped_folder
+from builder.collection.folders import read_folders
 from builder.collection.inspection import inspect_files, inspect_salt, shipped_shapes
 from builder.collection.records import Collection
 from builder.read.findings import Finding
@@ -77,7 +78,7 @@ def shapes() -> Shapes:
 
 @pytest.fixture(scope="module")
 def shipped(shapes: Shapes) -> Collection:
-    inspection = inspect_files(read_folders([shipped_folder("constants")], shapes), shapes)
+    inspection = inspect_files(read_folders([small_tree() / "constants"], shapes), shapes)
     assert inspection.reference is not None
     return inspection.collection
 
