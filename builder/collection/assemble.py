@@ -97,6 +97,7 @@ def assemble(files: Files, shapes: Shapes) -> Collection:
         sources=keyed(lists("sources", "sources", _source), lambda r: r.id),
         formation=keyed(tables, lambda r: r.id),
         weights=weights,
+        required=tuple(n for d in docs["required"] for n in cast(Any, d.value)["required"]),
         findings=tuple(findings),
         files=files.content,
     )

@@ -28,6 +28,7 @@ KINDS: Mapping[str, tuple[str, Sequence[tuple[str, str]]]] = {
     "formation": ("formation", (("entries", "formation-entry"),)),
     "weights": ("weights", (("weights", "weight"),)),
     "water": ("water", ()),
+    "required": ("required", ()),
 }
 
 

@@ -249,5 +249,6 @@ class Collection:
     sources: Mapping[str, Source]
     formation: Mapping[str, FormationTable]
     weights: Mapping[str, AtomicWeight]
+    required: tuple[str, ...]  # ids of salts that a laboratory must find
     findings: tuple[Finding, ...]
     files: Mapping[str, bytes] = field(compare=False)

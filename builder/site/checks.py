@@ -12,6 +12,7 @@ from builder.collection.choice import Evaluated
 from builder.collection.holding_out import HeldOut, figures, held_out
 from builder.collection.laws import REFERENCE_C, median
 from builder.collection.reference import Reference
+from builder.collection.summary import summarise
 from builder.read.findings import LEVELS, Finding
 from builder.site.frame import Frame, aligned, salt_address, words_of_count
 from builder.site.render import Renderer
@@ -101,7 +102,7 @@ def pages(
     chosen = [e.chosen.determination for e in salts]
     laws = [law for e in salts for law in e.salt.laws.values()]
     sources = reference.collection.sources
-    families = {sources[d.citation.source].family for d in every}
+    held = summarise(reference.collection)
     counts = Counter(f.level for f in findings)
     table = held_out(reference)
     predicted = [prediction(row, reference) for row in table]
@@ -110,10 +111,12 @@ def pages(
         "any_finding": bool(findings),
         "found": ", ".join(words_of_count(counts[n], n, n + "s") for n in LEVELS),
         "counts": (
-            (len(salts), "salts"),
-            (len(every), "determinations"),
-            (len(families), "independent families of sources"),
+            (held.salts, "salts"),
+            (held.determinations, "determinations"),
+            (held.families, "independent families of sources"),
+            (held.two_families, "salts with two or more of them"),
             (len(laws), "laws of temperature"),
+            (f"{held.required_found} of {held.required}", "salts that a laboratory must find"),
             (len(reference.collection.side_reactions), "side reactions"),
             (len(sources), "sources"),
         ),

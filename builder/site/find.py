@@ -10,6 +10,7 @@ from builder.collection.choice import Evaluated
 from builder.collection.dissolve import amounts, metal_of
 from builder.collection.laws import REFERENCE_C
 from builder.collection.reference import Reference
+from builder.collection.summary import summarise
 from builder.site.frame import Frame, aligned, salt_address, words_of_count
 from builder.site.render import Renderer
 from builder.site.words import ConstantText, constant_text
@@ -38,6 +39,7 @@ def pages(reference: Reference, frame: Frame, renderer: Renderer) -> dict[str, b
     context = frame.context("Find a salt", 0, ADDRESS) | {
         "groups": groups(reference, lines),
         "count": words_of_count(len(lines), "salt", "salts"),
+        "held": summarise(reference.collection),
         "aligned": aligned,
         "address": salt_address,
     }

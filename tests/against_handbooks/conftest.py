@@ -28,7 +28,8 @@ def reference() -> Reference:
 def transcripts() -> list[Row]:
     """Every row of the transcripts of constants, laws and solubilities."""
     names = ("textbook", "tables", "handbooks", "papers", "solubilities")
-    return [row for name in names for row in _rows(name)]
+    wide = ("wide-laws", *(f"wide-{name}" for name in names))
+    return [row for name in (*names, *wide) for row in _rows(name)]
 
 
 @pytest.fixture(scope="session")
