@@ -10,7 +10,12 @@ from http.server import SimpleHTTPRequestHandler, ThreadingHTTPServer
 from pathlib import Path
 
 import pytest
+from hypothesis import settings
 from playwright.sync_api import Browser, ConsoleMessage, Error, Page, sync_playwright
+
+# The same random cases in every run: what fails for one fails for all.
+settings.register_profile("same", derandomize=True)
+settings.load_profile("same")
 
 NO_BROWSER = (
     "Chromium not found: install Debian's chromium (apt-get install chromium) or set CHROMIUM"

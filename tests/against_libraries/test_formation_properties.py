@@ -128,6 +128,7 @@ SUBSTANCES = {
     "RaSO4(s)": ("7446-16-4", "s"),
     "RbClO4(s)": ("13510-42-4", "s"),
     "ScF3(s)": ("13709-47-2", "s"),
+    "SnI2(s)": ("10294-70-9", "s"),
     "SnO(s)": ("21651-19-4", "s"),
     "Sn(OH)2(s)": ("12026-24-3", "s"),
     "SnS(s)": ("1314-95-0", "s"),
@@ -178,6 +179,7 @@ DISSOLUTIONS = {
     "cobalt-carbonate": ("CoCO3(s)", {"Co^2+": 1, "CO3^2-": 1}),
     "cobalt-hydroxide": ("Co(OH)2(s)", {"Co^2+": 1, "OH^-": 2}),
     "cobalt-sulfide-alpha": ("CoS(s)", {"Co^2+": 1, "HS^-": 1}),
+    "cobalt-sulfide-beta": ("CoS(s)", {"Co^2+": 1, "HS^-": 1}),
     "copper-i-bromide": ("CuBr(s)", {"Cu^+": 1, "Br^-": 1}),
     "copper-i-chloride": ("CuCl(s)", {"Cu^+": 1, "Cl^-": 1}),
     "copper-i-cyanide": ("CuCN(s)", {"Cu^+": 1, "CN^-": 1}),
@@ -192,6 +194,7 @@ DISSOLUTIONS = {
     "hematite": ("Fe2O3(s)", {"Fe^3+": 2, "OH^-": 6, "H2O(l)": -3}),
     "iron-ii-carbonate": ("FeCO3(s)", {"Fe^2+": 1, "CO3^2-": 1}),
     "iron-ii-fluoride": ("FeF2(s)", {"Fe^2+": 1, "F^-": 2}),
+    "iron-ii-molybdate": ("FeMoO4(s)", {"Fe^2+": 1, "MoO4^2-": 1}),
     "iron-ii-sulfide": ("FeS(s)", {"Fe^2+": 1, "HS^-": 1}),
     "lead-bromide": ("PbBr2(s)", {"Pb^2+": 1, "Br^-": 2}),
     "lead-carbonate": ("PbCO3(s)", {"Pb^2+": 1, "CO3^2-": 1}),
@@ -245,6 +248,7 @@ DISSOLUTIONS = {
     "thallium-bromide": ("TlBr(s)", {"Tl^+": 1, "Br^-": 1}),
     "thallium-chloride": ("TlCl(s)", {"Tl^+": 1, "Cl^-": 1}),
     "thallium-iodide": ("TlI(s)", {"Tl^+": 1, "I^-": 1}),
+    "thallium-selenide": ("Tl2Se(s)", {"Tl^+": 2, "HSe^-": 1}),
     "thallium-sulfate": ("Tl2SO4(s)", {"Tl^+": 2, "SO4^2-": 1}),
     "thallium-sulfide": ("Tl2S(s)", {"Tl^+": 2, "HS^-": 1}),
     "thorium-fluoride": ("ThF4(s)", {"Th^4+": 1, "F^-": 4}),
@@ -256,6 +260,19 @@ DISSOLUTIONS = {
     "zinc-hydroxide": ("Zn(OH)2(s)", {"Zn^2+": 1, "OH^-": 2}),
     "zinc-oxide": ("ZnO(s)", {"Zn^2+": 1, "OH^-": 2, "H2O(l)": -1}),
     "zinc-selenide": ("ZnSe(s)", {"Zn^2+": 1, "HSe^-": 1}),
+}
+# salts whose enthalpy alone is taken from the handbook, typed into a law
+ENTHALPIES = {
+    "copper-ii-hydroxide": ("Cu(OH)2(s)", {"Cu^2+": 1, "OH^-": 2}),
+    "nickel-hydroxide-fresh": ("Ni(OH)2(s)", {"Ni^2+": 1, "OH^-": 2}),
+    "tin-ii-iodide": ("SnI2(s)", {"Sn^2+": 1, "I^-": 2}),
+}
+# ΔG - (ΔH - TΔS) in kJ/mol where it is more than 0.5: solid or ion is not on the scale of the rest
+NOT_CLOSING = {
+    "beryllium-hydroxide": 2.52,
+    "mercury-ii-bromide": -0.85,
+    "potassium-periodate": 0.66,
+    "thallium-sulfide": -0.76,
 }
 G, H, S, CP = "gibbs", "enthalpy", "entropy", "heat capacity"
 Properties = dict[str, float]  # J/mol, J/(mol K); a property the table does not give is absent
@@ -309,7 +326,7 @@ def _own(entry: FormationEntry) -> Properties:
 
 def _change(handbook: dict[str, Properties], salt: str, name: str) -> float | None:
     """Products less solid, J/mol or J/(mol K); None where the table lacks a number."""
-    solid, ions = DISSOLUTIONS[salt]
+    solid, ions = (DISSOLUTIONS | ENTHALPIES)[salt]
     if any(name not in handbook[f] for f in (solid, *ions)):
         return None
     return sum(n * handbook[f][name] for f, n in ions.items()) - handbook[solid][name]
@@ -363,11 +380,11 @@ def test_constant_and_changes(
             joules = found[0] * (1.0 if name == CP else 1e3)
             assert joules == pytest.approx(expected, abs=1e-6), name
     gibbs = _change(handbook, salt, G)
-    assert gibbs is not None
-    log10_k = -gibbs / (constants.R * 298.15 * math.log(10.0))
     for reported in evaluated.reported.values():
         if reported.determination.table == "crc-formation":
-            assert reported.log10_k == pytest.approx(log10_k, abs=1e-9)
+            assert gibbs is not None
+            log10_k = -gibbs / (constants.R * 298.15 * math.log(10.0))
+            assert reported.log10_k == pytest.approx(log10_k, rel=1e-9)
 
 
 @pytest.mark.parametrize("salt", DISSOLUTIONS)
@@ -377,8 +394,8 @@ def test_law_from_formation_properties(
     """ΔH of the law at 25 °C, and ΔCp where all heat capacities are tabulated."""
     laws = [x for x in reference.salts[salt].laws.values() if x.law.kind == "formation"]
     enthalpy, capacity = _change(handbook, salt, H), _change(handbook, salt, CP)
-    assert enthalpy is not None
     for law in laws:
+        assert enthalpy is not None
         assert law.curve is not None, law.reason
         # a law's coefficients are rounded to ten digits when made
         assert delta_h(law.curve.law, 25.0) == pytest.approx(enthalpy, rel=1e-8, abs=1e-4)
@@ -394,20 +411,31 @@ def test_recorded_enthalpies_computed_from_the_tables(
 ) -> None:
     """Enthalpies typed into a law with evidence `computed` are the differences they claim."""
     seen = 0
+    other = set()
     for salt, evaluated in reference.salts.items():
         for law in evaluated.laws.values():
             given = law.law.delta_h
             if given is None or law.law.citation.evidence != "computed":
                 continue
-            assert law.law.citation.source == "crc-formation-table"
+            if law.law.citation.source != "crc-formation-table":
+                other.add(law.law.citation.source)
+                continue
             assert given.value == pytest.approx(_change(handbook, salt, H), abs=1e-6)
             seen += 1
-    assert seen >= 2
+    assert seen >= 5
+    # of these sources the abstracts print an enthalpy of formation, or a function of temperature
+    assert other == {"benezeth-2011", "diakonov-1998", "gamsjager-1999", "liu-millero-1999"} | {
+        "palmer-gamsjager-2010",
+        "preis-2000",
+        "preis-2002",
+    }
 
 
 @pytest.mark.parametrize("salt", DISSOLUTIONS)
-def test_recorded_properties_close(salt: str, reference: Reference) -> None:
-    """ΔG = ΔH - TΔS of every dissolution within 0.5 kJ/mol (0.09 in log10 K).
+def test_recorded_properties_close(
+    salt: str, reference: Reference, handbook: dict[str, Properties]
+) -> None:
+    """ΔG = ΔH - TΔS of every dissolution within 0.5 kJ/mol (0.09 in log10 K) but for NOT_CLOSING.
 
     Rounding alone leaves about 0.1 kJ/mol. Where it does not close, a number is mistyped or not
     on the scale of the others, and the constant formed from them is worth less.
@@ -418,5 +446,12 @@ def test_recorded_properties_close(salt: str, reference: Reference) -> None:
         reaction_change(reaction, entries, field)
         for field in ("gibbs_kj_mol", "enthalpy_kj_mol", "entropy_j_mol_k")
     ]
+    if None in changes:  # nothing to compare; the handbook lacks the number too
+        assert None in [_change(handbook, salt, name) for name in (G, H, S)]
+        return
     gibbs, enthalpy, entropy = (change[0] for change in changes if change is not None)
-    assert gibbs - (enthalpy - 0.29815 * entropy) == pytest.approx(0.0, abs=0.5)
+    gap = gibbs - (enthalpy - 0.29815 * entropy)
+    if salt in NOT_CLOSING:
+        assert gap == pytest.approx(NOT_CLOSING[salt], abs=0.01)
+    else:
+        assert gap == pytest.approx(0.0, abs=0.5)

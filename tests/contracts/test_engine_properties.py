@@ -138,7 +138,8 @@ def test_a_common_ion_lowers_the_free_cation(fixed: dict[str, Any], common: floa
     without = solve(single(salt(**fixed, model=0)))
     beside = solve(single(salt(**fixed, model=0, common=common)))
     assert beside.molality[0, CATION] < without.molality[0, CATION]
-    assert beside.amount[0, 0] < without.amount[0, 0] * (1.0 + 1e-9)
+    if fixed["pair"] is None:
+        assert beside.amount[0, 0] < without.amount[0, 0] * (1.0 + 1e-9)
 
 
 @given(fixed=st.fixed_dictionaries(RANDOM), inert=st.floats(1e-3, 0.1))
