@@ -15,7 +15,7 @@ import functools
 import math
 import re
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from fractions import Fraction
 from pathlib import Path
 from typing import Any
@@ -46,11 +46,6 @@ NAMED_OTHERWISE = {
     "copper-i-iodide/portuguese-handout-2": "CuI2",
     "mercury-ii-oxide/gee-gees": "Hg2O·H2O",
     "mercury-ii-oxide/openstax-appendix-j": "Hg2O·H2O",
-}
-# Constants of reactions with H^+ that are entered as the logarithm of what is printed.
-AS_LOGARITHM = {
-    "gibbsite/may-1979": "1.29 × 10^8",
-    "manganese-sulfide-green/crc-ksp-table": "3E7",
 }
 # Less than 0.2 g in 100 g of solution: per 100 g of water it is the same number.
 MASS_PERCENT = re.compile(r"^mass % of solute in saturated solution$")
@@ -187,11 +182,6 @@ def spoken(characters: str) -> str:
 
 def differences(entry: Entry, row: Row) -> list[str]:
     """In what an entry differs from a transcript row; empty where they are the same number."""
-    logarithm = AS_LOGARITHM.get(entry.place)
-    if logarithm is not None and row["characters"] == logarithm:
-        digits = len(entry.characters.partition(".")[2])
-        assert float(entry.characters) == round(math.log10(float(spoken(logarithm))), digits)
-        entry = replace(entry, characters=logarithm, quantity="ksp")
     pairs = (
         ("document", entry.source, row["read_in"]),
         ("characters", entry.characters, row["characters"]),
