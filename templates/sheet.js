@@ -76,9 +76,8 @@
 
   // What stands in the fields: {t, additions, words} or null where a field is wrong.
   function read() {
-    var t = S.words.readTemperature(el('t').value), sound = true;
+    var t = S.words.readTemperature(el('t').value), sound = !t.error;
     fail(el('t'), 't-error', t.error);
-    sound = !t.error;
     var additions = [], words = [], labels = [];
     rows.forEach(function (row, i) {
       var salt = electrolyte(part(row, '.electrolyte').value);

@@ -58,15 +58,14 @@ def test_silver_halides_in_molar_ammonia(salt: str, molar: float, reference: Ref
 
 
 def test_fluorite_in_acid(reference: Reference) -> None:
-    """s = (Ksp (1 + K [H+])^2 / 4)^(1/3): the closed form of Skoog, West, Holler (fluoride and pH),
-    put to numbers here with the activities that the answer itself reports."""
+    """The HF formed is what its constant asks for, 10^3.18 of the NEA review (recalled), and acid
+    dissolves more: fluoride and pH in Skoog, West, Holler."""
     answer = dissolve_under(reference, "fluorite", 25.0, Conditions(ph=3.0))
     assert answer.titrant == "HCl"
     assert answer.titrant_mol_per_kg is not None
     assert answer.titrant_mol_per_kg > 0.0
     assert answer.ph == pytest.approx(3.0, abs=1e-9)
     forms = {f.form: f for f in answer.forms}
-    # HF carries its constant: [HF] = 10^3.18 a(H+) a(F-) / gamma, constant of the NEA review
     fluoride = forms["F^-"].mol_per_kg * forms["F^-"].activity_coefficient
     hf = 10.0**3.18 * 1e-3 * fluoride / forms["HF(aq)"].activity_coefficient
     assert forms["HF(aq)"].mol_per_kg == pytest.approx(hf, rel=0.02)
